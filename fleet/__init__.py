@@ -1,0 +1,1 @@
+"""wearbook: the library and the command line."""

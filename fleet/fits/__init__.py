@@ -1,0 +1,1 @@
+"""From life data to life distributions and posteriors."""

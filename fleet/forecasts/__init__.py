@@ -1,0 +1,1 @@
+"""From posteriors, present ages and planned use to odds and demand."""

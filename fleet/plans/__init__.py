@@ -1,0 +1,1 @@
+"""From forecasts, costs and stock to what to replace, hold and print."""

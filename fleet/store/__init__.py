@@ -1,0 +1,1 @@
+"""The only SQL: models, migrations, opening, writing, reading and importing a book."""

@@ -1,0 +1,1 @@
+"""From raw joint logs to hours, turns and impacts; bearing ratings."""

@@ -1,0 +1,1 @@
+"""Published reference data and answers."""
