@@ -1,0 +1,85 @@
+"""The History: everything a book holds, as of one moment and as known by one moment; frozen, and all that fits read."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass
+from datetime import datetime, tzinfo
+from types import MappingProxyType
+from typing import TypeVar
+from zoneinfo import ZoneInfo
+
+from fleet.records.fields import Record
+from fleet.records.ledger import LEDGER, LedgerRecord
+from fleet.records.set_up import SET_UP, Settings
+
+KINDS: tuple[type[Record], ...] = (*SET_UP, *LEDGER)
+
+_R = TypeVar("_R", bound=Record)
+
+
+@dataclass(frozen=True, eq=False)
+class History:
+    """Current versions of all records that had happened by `as_of`.
+
+    `write_number` is the book's last write that is in here; two histories of one book with the same write number
+    and the same `as_of` are the same.
+    """
+
+    rows: Mapping[type[Record], Mapping[str, Record]]
+    as_of: datetime
+    write_number: int
+
+    def of(self, kind: type[_R]) -> Mapping[str, _R]:
+        """record_id -> record, for one kind; ledger kinds in order of time, then sequence."""
+        return self.rows.get(kind, MappingProxyType({}))  # type: ignore[return-value]
+
+    def one(self, kind: type[_R], record_id: str) -> _R:
+        """The record with this id; KeyError if it is not there."""
+        return self.of(kind)[record_id]
+
+    @property
+    def settings(self) -> Settings | None:
+        """The book's own settings, if it has any yet."""
+        return next(iter(self.of(Settings).values()), None)
+
+    @property
+    def zone(self) -> tzinfo:
+        """The home zone of the book."""
+        settings = self.settings
+        return ZoneInfo(settings.zone if settings is not None else "UTC")
+
+    def with_records(self, records: Iterable[Record]) -> History:
+        """The history as it would be with these records added (or put in the place of those with the same id)."""
+        rows = {kind: dict(held) for kind, held in self.rows.items()}
+        for entry in records:
+            rows.setdefault(type(entry), {})[entry.record_id] = entry
+        return history_of((entry for held in rows.values() for entry in held.values()), self.as_of, self.write_number)
+
+
+def history_of(records: Iterable[Record], as_of: datetime, write_number: int = 0) -> History:
+    """Put records into a History, in order of time.
+
+    Ledger records that happen after `as_of` are left out.
+    """
+    rows: dict[type[Record], list[Record]] = {}
+    for entry in records:
+        if isinstance(entry, LedgerRecord) and entry.happened_at > as_of:
+            continue
+        rows.setdefault(type(entry), []).append(entry)
+    return History(
+        rows=MappingProxyType({kind: MappingProxyType(_by_id(held)) for kind, held in rows.items()}),
+        as_of=as_of,
+        write_number=write_number,
+    )
+
+
+def _by_id(held: list[Record]) -> dict[str, Record]:
+    if held and isinstance(held[0], LedgerRecord):
+        held = sorted(held, key=_ledger_order)
+    return {entry.record_id: entry for entry in held}
+
+
+def _ledger_order(entry: Record) -> tuple[datetime, int]:
+    assert isinstance(entry, LedgerRecord)
+    return (entry.happened_at, entry.sequence)
