@@ -1,0 +1,280 @@
+"""What people log at the bench: a session, a failure, a swap, a check; each becomes records in one write."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, field
+from datetime import datetime, timedelta
+from typing import Literal
+
+from fleet.errors import RecordError
+from fleet.records.fields import Record
+from fleet.records.history import History
+from fleet.records.ledger import BenchCheck, Failure, Fitment, Hold, Release, Removal, Session
+from fleet.records.set_up import PartMode, PartType, Position, Robot, Slot
+from fleet.records.whereabouts import FittedPart, Whereabouts, whereabouts_of
+from fleet.store.book import Book
+from fleet.store.writing import Entry, Writer, new_record_id, records_of_write, write
+
+Happened = Literal["failed", "found worn", "replaced while good"]
+LATE_AFTER = timedelta(hours=12)
+_AHEAD = timedelta(minutes=5)
+
+
+@dataclass(frozen=True)
+class PartEntry:
+    """One part with something to say; all but `happened` are record ids, `place` is 1 in a single slot.
+
+    `lot` is where the spare that was put in comes from; None if none was fitted.
+    """
+
+    position: str
+    slot: str
+    happened: Happened
+    place: int = 1
+    mode: str | None = None
+    lot: str | None = None
+    cause: str = "unknown"
+
+
+@dataclass(frozen=True)
+class SessionEntry:
+    """One session of one robot, with the parts that have something to say."""
+
+    robot: str
+    hours: float
+    impacts: int = 0
+    ended_at: datetime | None = None
+    parts: tuple[PartEntry, ...] = ()
+    note: str | None = None
+    broken_off: bool = False
+
+
+@dataclass(frozen=True)
+class Receipt:
+    """What was written: the number of the write, in words, and whether the same draft had been written before."""
+
+    write_number: int
+    sentence: str
+    already: bool = False
+    record_ids: tuple[str, ...] = field(default=())
+
+
+def log_session(book: Book, session: SessionEntry, now: datetime, entered_by: str, draft: str | None = None) -> Receipt:
+    """Write a session, and with it what happened to its parts.
+
+    A failure that stopped the robot happened at the session's end; spares are fitted after it.
+    """
+    ended_at = session.ended_at or now
+    _refuse_the_future(ended_at, now)
+    if not session.hours >= 0 or session.hours > 24 * 31:
+        raise RecordError(f"hours is {session.hours:g}; a session has from 0 to 744 hours.")
+    with write(book, Entry(now, entered_by, "session", draft)) as writer:
+        robot = _robot(writer.history, session.robot)
+        sentence = _session_sentence(robot, session, ended_at, now)
+        if writer.written_before is not None:
+            return Receipt(writer.written_before, sentence, already=True)
+        run_seconds = round(session.hours * 3600)
+        session_id = new_record_id()
+        records = [record for part in session.parts for record in _part_records(writer, part, ended_at, session_id)]
+        stopped = any(isinstance(record, Failure) and record.finding == "stopped" for record in records)
+        outcome = "stopped" if stopped else "broken off" if session.broken_off else "finished"
+        logged = Session(
+            record_id=session_id,
+            happened_at=ended_at - timedelta(seconds=max(run_seconds, 60)),
+            ended_at=ended_at,
+            robot=session.robot,
+            run_seconds=run_seconds,
+            impacts=session.impacts,
+            outcome=outcome,
+            note=session.note,
+        )
+        _add(writer, [logged, *records])
+    return Receipt(writer.write_number, sentence, record_ids=tuple(r.record_id for r in writer.records))
+
+
+def log_part(
+    book: Book, part: PartEntry, happened_at: datetime | None, now: datetime, entered_by: str, draft: str | None = None
+) -> Receipt:
+    """Write what happened to one part outside a session: a failure, a part found worn, or a swap of a good one."""
+    moment = happened_at or now
+    _refuse_the_future(moment, now)
+    with write(book, Entry(now, entered_by, part.happened, draft)) as writer:
+        sentence = _part_sentence(writer.history, part)
+        if writer.written_before is not None:
+            return Receipt(writer.written_before, sentence, already=True)
+        session = _session_ended_at(writer.history, part.position, moment)
+        _add(writer, _part_records(writer, part, moment, session))
+    return Receipt(writer.write_number, sentence, record_ids=tuple(r.record_id for r in writer.records))
+
+
+@dataclass(frozen=True)
+class CheckEntry:
+    """A look at a joint on the bench; record ids; without a slot it covers the whole joint."""
+
+    position: str
+    slot: str | None
+    mode: str | None
+    good: bool
+    note: str | None = None
+
+
+def log_check(book: Book, check: CheckEntry, happened_at: datetime | None, now: datetime, entered_by: str) -> Receipt:
+    """Write a bench check; a doubtful verdict also holds the joint until a person releases it."""
+    moment = happened_at or now
+    _refuse_the_future(moment, now)
+    with write(book, Entry(now, entered_by, "check")) as writer:
+        position = writer.history.one(Position, check.position)
+        unit = _unit_in(whereabouts_of(writer.history), position, moment)
+        verdict = "good" if check.good else "doubtful"
+        records: list[Record] = [
+            BenchCheck(
+                record_id=new_record_id(),
+                happened_at=moment,
+                unit=unit,
+                slot=check.slot,
+                mode=check.mode,
+                verdict=verdict,
+                note=check.note,
+            )
+        ]
+        if not check.good:
+            why = check.note or "looked doubtful at a check"
+            records.append(Hold(record_id=new_record_id(), happened_at=moment, unit=unit, why=why))
+        _add(writer, records)
+        robot = writer.history.one(Robot, position.robot)
+    return Receipt(writer.write_number, f"{robot.code} {position.label}: checked, {verdict}.")
+
+
+def lift_hold(book: Book, hold: str, why: str, now: datetime, entered_by: str) -> Receipt:
+    """Release what was held; only a person does this, with a reason."""
+    if not why.strip():
+        raise RecordError("Say why the hold is lifted; the reason stays in the book.")
+    with write(book, Entry(now, entered_by, "release")) as writer:
+        if hold not in writer.history.of(Hold):
+            raise RecordError("There is no such hold in this book.")
+        writer.add(Release(record_id=new_record_id(), happened_at=now, hold=hold, why=why))
+    return Receipt(writer.write_number, "Released.")
+
+
+def undo(book: Book, write_number: int, now: datetime, entered_by: str, reason: str = "undone") -> Receipt:
+    """Take back everything that one write brought in; the records stay in the book as withdrawn."""
+    with write(book, Entry(now, entered_by, f"undo of write {write_number}")) as writer:
+        with book.reading() as connection:
+            found = records_of_write(connection, write_number)
+        still_there = [record_id for cls, record_id in found if record_id in writer.history.of(cls)]
+        if not still_there:
+            raise RecordError(f"Nothing of write {write_number} is left to undo.")
+        for record_id in still_there:
+            writer.withdraw(record_id, reason)
+        writer.explain = lambda _: RecordError("Later entries build on that one: undo those first.")
+    return Receipt(writer.write_number, f"Undone: {len(still_there)} records of write {write_number} taken back.")
+
+
+def _add(writer: Writer, records: Sequence[Record]) -> None:
+    for record in records:
+        writer.add(record)
+
+
+def _robot(history: History, record_id: str) -> Robot:
+    if record_id not in history.of(Robot):
+        raise RecordError("There is no such robot in this book.")
+    return history.one(Robot, record_id)
+
+
+def _refuse_the_future(moment: datetime, now: datetime) -> None:
+    if moment > now + _AHEAD:
+        raise RecordError(f"{moment:%Y-%m-%d %H:%M} is in the future: check the date.")
+
+
+def _unit_in(whereabouts: Whereabouts, position: Position, moment: datetime) -> str:
+    unit = whereabouts.unit_in(position.record_id, moment)
+    if unit is None:
+        raise RecordError(f"Joint {position.code} held no module at {moment:%Y-%m-%d %H:%M}.")
+    return unit
+
+
+def _session_ended_at(history: History, position: str, moment: datetime) -> str | None:
+    robot = history.one(Position, position).robot
+    for session in history.of(Session).values():
+        if session.robot == robot and session.ended_at == moment:
+            return session.record_id
+    return None
+
+
+def _part_in(history: History, whereabouts: Whereabouts, part: PartEntry, moment: datetime) -> FittedPart:
+    position, slot = history.one(Position, part.position), history.one(Slot, part.slot)
+    unit = _unit_in(whereabouts, position, moment)
+    if not 1 <= part.place <= slot.count:
+        raise RecordError(f"{slot.code} has places 1 to {slot.count}; {part.place} is not one of them.")
+    found = whereabouts.part_at(unit, part.slot, part.place, moment)
+    if found is None or (found.end is not None and found.end < moment):
+        raise RecordError(
+            f"{slot.code} of joint {position.code} held no part at {moment:%Y-%m-%d %H:%M}; "
+            "check the joint, or the date: a part cannot fail before it was fitted."
+        )
+    return found
+
+
+def _part_records(writer: Writer, part: PartEntry, moment: datetime, session: str | None) -> list[Record]:
+    whereabouts = whereabouts_of(writer.history)
+    found = _part_in(writer.history, whereabouts, part, moment)
+    failed = part.happened != "replaced while good"
+    records: list[Record] = []
+    if failed:
+        records.append(_failure(writer.history, part, found, moment, session))
+    if failed and part.lot is None:
+        return records
+    reason = "failed" if part.happened == "failed" else part.happened
+    fitment = found.fitment
+    records.append(
+        Removal(
+            record_id=new_record_id(), happened_at=moment, fitment=fitment.record_id, place=part.place, reason=reason
+        )
+    )
+    if part.lot is not None:
+        records.append(
+            Fitment(
+                record_id=new_record_id(),
+                happened_at=moment,
+                sequence=1,
+                unit=fitment.unit,
+                slot=fitment.slot,
+                first_place=part.place,
+                lot=part.lot,
+            )
+        )
+    return records
+
+
+def _failure(history: History, part: PartEntry, found: FittedPart, moment: datetime, session: str | None) -> Failure:
+    if part.mode is None:
+        raise RecordError("Say how it failed: choose what was seen.")
+    stops = history.one(Slot, part.slot).stops_at
+    # One of several that the robot can do without is past its limit, but did not stop anything.
+    finding = "found worn" if part.happened == "found worn" else "stopped" if stops == 1 else "over its limit"
+    return Failure(
+        record_id=new_record_id(),
+        happened_at=moment,
+        fitment=found.fitment.record_id,
+        place=part.place,
+        mode=part.mode,
+        finding=finding,
+        cause=part.cause,
+        how_found="during the session" if finding == "stopped" else "after the session",
+        session=session,
+    )
+
+
+def _session_sentence(robot: Robot, session: SessionEntry, ended_at: datetime, now: datetime) -> str:
+    parts = len(session.parts)
+    said = f"{robot.code}: {session.hours:g} h, {session.impacts} impacts, {parts} part{'' if parts == 1 else 's'}"
+    late = f", late entry for {ended_at:%Y-%m-%d %H:%M}" if now - ended_at > LATE_AFTER else ""
+    return f"{said}{late}."
+
+
+def _part_sentence(history: History, part: PartEntry) -> str:
+    position, slot = history.one(Position, part.position), history.one(Slot, part.slot)
+    robot, part_type = history.one(Robot, position.robot), history.one(PartType, slot.part_type)
+    how = "" if part.mode is None else f" ({history.one(PartMode, part.mode).label})"
+    return f"{robot.code} {position.label}: {part_type.label} {part.happened}{how}."

@@ -1,0 +1,1 @@
+"""How a book on disk comes to its present tables."""
