@@ -1,0 +1,225 @@
+"""From ages to life data: for each part type, revision and lot kept apart, one table per mode and endpoint."""
+
+from __future__ import annotations
+
+from bisect import bisect_left
+from collections import defaultdict
+from collections.abc import Iterable, Sequence
+from dataclasses import dataclass
+from datetime import datetime
+from typing import Literal
+
+from fleet.lives.ages import Age, Ages, PartSpan
+from fleet.lives.life_data import LifeData
+from fleet.records.history import History
+from fleet.records.ledger import BenchCheck, Failure, Fitment, Session
+from fleet.records.set_up import Lot, PartMode, PartType, Revision, Slot
+
+Endpoint = Literal["stop", "unfit"]
+
+
+@dataclass(frozen=True)
+class LifeKey:
+    """Parts that share one life: a part type, its revision, and a lot if that is fitted on its own. Record ids."""
+
+    part_type: str
+    revision: str | None = None
+    apart_lot: str | None = None
+
+    @property
+    def name(self) -> str:
+        """One text for all three, for use as a key."""
+        return "/".join(part or "-" for part in (self.part_type, self.revision, self.apart_lot))
+
+
+@dataclass(frozen=True, eq=False)
+class ModeData:
+    """Life data of one mode: `stop` counts what stopped the robot, `unfit` also what was worn or over its limit."""
+
+    mode: PartMode
+    stop: LifeData
+    unfit: LifeData
+
+
+@dataclass(frozen=True, eq=False)
+class PartData:
+    """All life data of one LifeKey.
+
+    `left_out` counts parts whose age nobody knows, `no_use` failures before any use; neither is in the tables.
+    `use` is the total use of all parts seen, by clock, from which one clock's rate against another follows.
+    """
+
+    key: LifeKey
+    label: str
+    modes: tuple[ModeData, ...]
+    failures: int
+    running: int
+    suspended: int
+    left_out: int
+    no_use: int
+    use: Age
+
+
+def life_key_of(history: History, fitment: Fitment) -> LifeKey:
+    """Which life a fitment belongs to; a moved part keeps the lot and revision it came with."""
+    source = fitment
+    while source.lot is None and source.revision is None and source.comes_from is not None:
+        source = history.one(Fitment, source.comes_from)
+    part_type = history.one(Slot, fitment.slot).part_type
+    lot = None if source.lot is None else history.one(Lot, source.lot)
+    return life_key_of_lot(part_type, lot, source.revision)
+
+
+def life_key_of_lot(part_type: str, lot: Lot | None, revision: str | None = None) -> LifeKey:
+    """Which life parts of a lot belong to."""
+    if lot is None:
+        return LifeKey(part_type, revision)
+    return LifeKey(part_type, lot.revision or revision, lot.record_id if lot.kept_apart else None)
+
+
+def part_data(history: History, ages: Ages) -> dict[LifeKey, PartData]:
+    """Life data of every part type, revision and lot kept apart that was ever fitted or is in the set-up."""
+    spans: dict[LifeKey, list[PartSpan]] = defaultdict(list)
+    for span in ages.spans:
+        spans[life_key_of(history, span.fitment)].append(span)
+    for part_type in history.of(PartType):
+        if not any(key.part_type == part_type for key in spans):
+            spans[LifeKey(part_type)] = []
+    checks = _Checks(history)
+    return {key: _part_data(history, ages, checks, key, held) for key, held in spans.items()}
+
+
+def _part_data(history: History, ages: Ages, checks: _Checks, key: LifeKey, spans: Sequence[PartSpan]) -> PartData:
+    modes = [mode for mode in history.of(PartMode).values() if mode.part_type == key.part_type]
+    known = [span for span in spans if span.known]
+    seen = [_observe(history, ages, checks, span) for span in known]
+    failed = [row for row in seen if row.failure is not None]
+    return PartData(
+        key=key,
+        label=label_of(history, key),
+        modes=tuple(
+            ModeData(mode, stop=_life_data(seen, mode, "stop"), unfit=_life_data(seen, mode, "unfit")) for mode in modes
+        ),
+        failures=sum(row.span.count for row in failed),
+        running=sum(span.count for span in spans if span.running),
+        suspended=sum(row.span.count for row in seen) - sum(row.span.count for row in failed),
+        left_out=sum(span.count for span in spans) - sum(span.count for span in known),
+        no_use=sum(row.span.count for row in failed if row.upper.get("hours", 0.0) <= 0),
+        use=_total_use(known),
+    )
+
+
+def label_of(history: History, key: LifeKey) -> str:
+    """Name of a life in plain words: part, revision, and the lot if it is kept apart."""
+    label = history.one(PartType, key.part_type).label
+    if key.revision is not None:
+        label += f" {history.one(Revision, key.revision).code}"
+    if key.apart_lot is not None:
+        label += f", lot {history.one(Lot, key.apart_lot).code} apart"
+    return label
+
+
+def _total_use(spans: Iterable[PartSpan]) -> Age:
+    total: dict[str, float] = defaultdict(float)
+    for span in spans:
+        for clock, use in span.use.items():
+            total[clock] += span.count * use
+    return dict(total)
+
+
+@dataclass(frozen=True)
+class _Observed:
+    """One span as the likelihood sees it: in (lower, upper] its failure, exact where both are equal.
+
+    `failure` is None for a suspension, and for a part that another part's failure broke; `stopped` says whether the
+    failure counts for the endpoint *stop*.
+    """
+
+    span: PartSpan
+    failure: Failure | None
+    stopped: bool
+    lower: Age
+    upper: Age
+
+
+def _observe(history: History, ages: Ages, checks: _Checks, span: PartSpan) -> _Observed:
+    failure = span.failure
+    if failure is None or failure.cause == "another part's failure":
+        return _Observed(span, None, False, span.age, span.age)
+    start = _last_known_good(history, checks, span, failure)
+    lower = span.age if start is None else ages.age_of(span, start)
+    return _Observed(span, failure, _counts_as_stop(history, span, failure), lower, span.age)
+
+
+def _counts_as_stop(history: History, span: PartSpan, failure: Failure) -> bool:
+    """A part of a set that the robot can partly do without counts towards a stop once it no longer does its work."""
+    stops_at = history.one(Slot, span.fitment.slot).stops_at
+    shared = stops_at is not None and stops_at > 1
+    return failure.finding == "stopped" or (shared and failure.finding == "over its limit")
+
+
+def _last_known_good(history: History, checks: _Checks, span: PartSpan, failure: Failure) -> datetime | None:
+    """The moment after which the failure must have happened; None if its own moment is known exactly."""
+    if failure.finding == "found worn" or failure.how_found == "at a check":
+        return checks.last_good(span.fitment, failure)
+    if failure.happened_until is not None:
+        return max(failure.happened_at, span.fitment.happened_at)
+    session = None if failure.session is None else history.of(Session).get(failure.session)
+    if session is None or (failure.finding == "stopped" and failure.happened_at == session.ended_at):
+        return None
+    return max(session.happened_at, span.fitment.happened_at)
+
+
+class _Checks:
+    """The good verdicts on each module, in order of time."""
+
+    def __init__(self, history: History) -> None:
+        self._good: dict[str, list[BenchCheck]] = defaultdict(list)
+        for check in history.of(BenchCheck).values():
+            if check.verdict == "good":
+                self._good[check.unit].append(check)
+
+    def last_good(self, fitment: Fitment, failure: Failure) -> datetime:
+        """The last check before a failure that could have shown its mode and did not; else when it was fitted."""
+        held = self._good[fitment.unit]
+        at = bisect_left([check.happened_at for check in held], failure.happened_at)
+        for check in reversed(held[:at]):
+            if check.happened_at <= fitment.happened_at:
+                break
+            if check.slot in (None, fitment.slot) and check.mode in (None, failure.mode):
+                return check.happened_at
+        return fitment.happened_at
+
+
+def _life_data(seen: Sequence[_Observed], mode: PartMode, endpoint: Endpoint) -> LifeData:
+    """The rows of one mode: its own failures, everything else as suspensions. Rows without use are left out."""
+    clock = mode.clock
+    rows = [row for row in (_row(observed, mode, endpoint) for observed in seen) if row is not None]
+    return LifeData(
+        [row[0] for row in rows],
+        [row[1] for row in rows],
+        [row[2] for row in rows],
+        [row[3] for row in rows],
+        mode=[mode.code if row[1] != float("inf") else None for row in rows],
+        clock=clock,
+        records=[row[4] for row in rows],
+    )
+
+
+_Row = tuple[float, float, float, float, tuple[str, ...]]
+
+
+def _row(seen: _Observed, mode: PartMode, endpoint: Endpoint) -> _Row | None:
+    clock, span = mode.clock, seen.span
+    if clock not in seen.upper or clock not in seen.lower:
+        return None
+    entry, lower, upper = span.entry[clock], seen.lower[clock], seen.upper[clock]
+    if upper <= entry:
+        return None
+    records = tuple(record.record_id for record in (span.fitment, span.failure, span.removal) if record is not None)
+    own = seen.failure is not None and seen.failure.mode == mode.record_id
+    if own and (endpoint == "unfit" or seen.stopped):
+        return max(lower, entry), upper, entry, float(span.count), records
+    # A failure of another mode suspends at the middle of its interval; one that does not count here, at its finding.
+    suspended = upper if seen.failure is None or own else max(entry, 0.5 * (lower + upper))
+    return suspended, float("inf"), entry, float(span.count), records
