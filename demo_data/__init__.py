@@ -1,0 +1,1 @@
+"""The invented fleet: a seeded generator and the CSV files it makes."""
