@@ -107,7 +107,7 @@ STATED_PRIOR_HOURS_ELSE = 310.0
 PRIOR_IMPACTS_PER_HOUR = 6.0
 HIDDEN_PRIOR_HOURS = (120.0, 420.0)  # true, but nobody wrote it down
 
-_LEG_TURNS = {"hip": 500, "thigh": 900, "knee": 1100}
+_LEG_TURNS = {"hip": 500, "thigh": 1000, "knee": 1500}
 _ARM_TURNS = {"base": 450, "shoulder": 600, "elbow": 700, "wrist": 800, "grip": 500}
 
 
@@ -208,7 +208,9 @@ CLOSED_FROM, CLOSED_TO = date(2025, 12, 24), date(2026, 1, 2)
 BAD_LOT_SCRAPPED = date(2026, 3, 16)
 COUNTING_DAYS = (date(2026, 1, 5), date(2026, 4, 1), date(2026, 7, 1), date(2026, 10, 1), date(2026, 11, 27))
 PINS_LOST_DAY, PINS_LOST = date(2026, 7, 1), 3
-CABLES_SPOILT_DAY, CABLES_KEPT = date(2026, 11, 27), 2
+# A leak over the shelf spoilt most of some bags; what is kept of each part type:
+SPOILT_DAY = LAST_DAY
+SPOILT_KEPT = {"cable": 2, "disc": 5, "cam": 2, "bump stop": 1, "idler": 1}
 LEFT_OPEN_FROM = date(2026, 11, 18)  # the first walker stopped by one part from here on waits for its repair
 LAST_CHECKS = (date(2026, 11, 23), date(2026, 11, 24), date(2026, 11, 25), date(2026, 11, 26), date(2026, 11, 27))
 

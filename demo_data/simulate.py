@@ -223,8 +223,9 @@ class _Fleet:
         moment = _at(day, 17, 30)
         if day == plan.BAD_LOT_SCRAPPED:
             self._store.scrap("disc", moment, lot=plan.BAD_LOT)
-        if day == plan.CABLES_SPOILT_DAY:
-            self._store.scrap("cable", moment, keep=plan.CABLES_KEPT)
+        if day == plan.SPOILT_DAY:
+            for part_type, kept in plan.SPOILT_KEPT.items():
+                self._store.scrap(part_type, moment, keep=kept)
         if day in plan.COUNTING_DAYS:
             self._store.count(_at(day, 17, 45), plan.PINS_LOST if day == plan.PINS_LOST_DAY else 0)
 

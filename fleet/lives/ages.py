@@ -116,9 +116,12 @@ def _groups(whereabouts: Whereabouts) -> list[list[FittedPart]]:
 
 
 def _end(part: FittedPart, failure: Failure | None, as_of: datetime) -> datetime:
-    if failure is not None:
-        return max(failure.happened_until or failure.happened_at, part.fitment.happened_at)
-    return as_of if part.end is None else part.end
+    if failure is None:
+        return as_of if part.end is None else part.end
+    end = failure.happened_until or failure.happened_at
+    if part.removal is not None:
+        end = min(end, part.removal.happened_until or part.removal.happened_at)
+    return max(min(end, as_of), part.fitment.happened_at)
 
 
 def _use_at_ends(
@@ -141,17 +144,25 @@ def _starting_ages(history: History, whereabouts: Whereabouts, meters: Meters) -
     """Age of each fitment when fitted, in USE_CLOCKS and days; NaN where unknown. A moved part brings its age."""
     starts: dict[str, FloatArray] = {}
     for fitment in history.of(Fitment).values():
-        if fitment.comes_from is None or fitment.comes_from not in starts:
+        if fitment.comes_from is None:
             starts[fitment.record_id] = _stated_age(fitment)
             continue
+        if fitment.comes_from not in starts:  # where it came from was entered only later
+            starts[fitment.record_id] = np.full(len(USE_CLOCKS) + 1, np.nan)
+            continue
         source = history.one(Fitment, fitment.comes_from)
-        gone = [part for part in whereabouts.parts_of_fitment[source.record_id] if part.end is not None]
-        ends = [part.end for part in gone if part.end is not None and part.end <= fitment.happened_at]
-        end = max(ends, default=fitment.happened_at)
+        end = _taken_out(whereabouts.parts_of_fitment[source.record_id], fitment.happened_at)
         use = meters.unit_use(source.unit, [source.happened_at, end])
         days = (end - source.happened_at).total_seconds() / _SECONDS_A_DAY
         starts[fitment.record_id] = starts[source.record_id] + np.append(use[1] - use[0], days)
     return starts
+
+
+def _taken_out(parts: Sequence[FittedPart], refitted: datetime) -> datetime:
+    """When one of these was taken out to be fitted again: the last that was moved, else the last taken out by then."""
+    gone = [part.removal for part in parts if part.removal is not None and part.removal.happened_at <= refitted]
+    moved = [removal for removal in gone if removal.reason == "moved"]
+    return max((removal.happened_at for removal in moved or gone), default=refitted)
 
 
 def _stated_age(fitment: Fitment) -> FloatArray:

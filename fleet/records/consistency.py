@@ -63,6 +63,10 @@ def _clock(moment: datetime) -> str:
     return moment.strftime("%Y-%m-%d %H:%M")
 
 
+def _from_to(session: Session) -> str:
+    return f"from {_clock(session.happened_at)} to {_clock(session.ended_at)}"
+
+
 def _dangling_references(history: History) -> Iterator[Problem]:
     classes = {kind_of(cls): cls for cls in KINDS}
     for cls in KINDS:
@@ -132,13 +136,15 @@ def _sessions(history: History, _: Whereabouts) -> Iterator[Problem]:
         by_robot[session.robot].append(session)
     for robot_id, sessions in by_robot.items():
         robot = history.one(Robot, robot_id)
-        for earlier, later in pairwise(sessions):
-            if later.happened_at < earlier.ended_at:
+        longest = sessions[0]
+        for later in sessions[1:]:
+            if later.happened_at < longest.ended_at:
                 yield Problem(
                     later.record_id,
-                    f"{robot.code} was in a session from {_clock(earlier.happened_at)} to {_clock(earlier.ended_at)}; "
-                    "correct the start, or leave this one out if it is the same.",
+                    f"the session of {robot.code} {_from_to(later)} overlaps the one {_from_to(longest)}; "
+                    "correct the times, or leave one out if they are the same.",
                 )
+            longest = max(longest, later, key=lambda session: session.ended_at)
         for session in sessions:
             if session.happened_at < robot.in_service_from:
                 yield Problem(

@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import dataclasses
 import math
-from collections.abc import Callable, Sequence
+import unicodedata
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from datetime import UTC, datetime
 from typing import Any, Literal, TypeVar, dataclass_transform
@@ -20,6 +21,7 @@ EARLIEST = datetime(1990, 1, 1, tzinfo=UTC)
 LATEST = datetime(2150, 1, 1, tzinfo=UTC)
 LONGEST_TEXT = 2000
 LONGEST_CODE = 60
+_UNWRITABLE = ("Cc", "Cs")  # control characters, and lone halves of characters that UTF-8 cannot write
 
 
 @dataclass(frozen=True)
@@ -118,9 +120,16 @@ def record(kind: str) -> Callable[[type[_R]], type[_R]]:
     return decorate
 
 
-def fields_of(cls: type) -> dict[str, FieldSpec]:
+def fields_of(cls: type) -> Mapping[str, FieldSpec]:
     """Field name -> what it may hold, in the order of declaration."""
-    return {f.name: f.metadata[_METADATA] for f in dataclasses.fields(cls) if _METADATA in f.metadata}
+    found = _FIELDS.get(cls)
+    if found is None:
+        found = {f.name: f.metadata[_METADATA] for f in dataclasses.fields(cls) if _METADATA in f.metadata}
+        _FIELDS[cls] = found
+    return found
+
+
+_FIELDS: dict[type, Mapping[str, FieldSpec]] = {}
 
 
 def column_of(name: str, spec: FieldSpec) -> str:
@@ -143,7 +152,7 @@ def _text_problem(spec: FieldSpec, value: Any) -> str | None:
         return f"is longer than {longest} characters"
     if spec.kind == "code" and not value.strip():
         return "is empty"
-    if any(ord(letter) < 32 and letter not in "\n\t" for letter in value):
+    if any(unicodedata.category(letter) in _UNWRITABLE and letter not in "\n\t" for letter in value):
         return "holds a control character"
     return None
 

@@ -44,10 +44,15 @@ class History:
         return next(iter(self.of(Settings).values()), None)
 
     @property
+    def zone_name(self) -> str:
+        """Name of the home zone of the book; UTC while it has no settings."""
+        settings = self.settings
+        return settings.zone if settings is not None else "UTC"
+
+    @property
     def zone(self) -> tzinfo:
         """The home zone of the book."""
-        settings = self.settings
-        return ZoneInfo(settings.zone if settings is not None else "UTC")
+        return ZoneInfo(self.zone_name)
 
     def with_records(self, records: Iterable[Record]) -> History:
         """The history as it would be with these records added (or put in the place of those with the same id)."""

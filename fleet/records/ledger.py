@@ -121,9 +121,14 @@ class Fitment(LedgerRecord):
         problems = super().contradictions()
         if self.prior == "stated" and self.prior_run_seconds is None:
             problems.append("prior is stated, but prior_hours is missing")
-        if self.prior != "stated" and any(
-            value is not None for value in (self.prior_run_seconds, self.prior_turns, self.prior_impacts)
-        ):
+        stated = (
+            self.prior_run_seconds,
+            self.prior_load_seconds,
+            self.prior_turns,
+            self.prior_impacts,
+            self.prior_days,
+        )
+        if self.prior != "stated" and any(value is not None for value in stated):
             problems.append(f"prior is {self.prior}, but an age is given; say prior stated")
         if self.comes_from is not None and self.prior != "new":
             problems.append("a moved part keeps its age by itself; leave prior empty")

@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-import shutil
 import sqlite3
 from collections.abc import Iterator
-from contextlib import contextmanager
+from contextlib import closing, contextmanager
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
@@ -19,6 +18,7 @@ from fleet.store.tables import book_write, metadata
 
 NEWEST_MIGRATION = "0001"
 BUSY_TIMEOUT_MS = 10_000
+_TABLES_OF_A_BOOK = ("alembic_version", "book_write")
 _MIGRATIONS = Path(__file__).parent / "migrations"
 
 
@@ -132,6 +132,11 @@ def _refuse_what_is_no_book(path: Path) -> None:
         raise BookError(f"{path} cannot be read: {error.strerror}.") from None
     if start != b"SQLite format 3\x00":
         raise BookError(f"{path} is not a book: wearbook made no such file. Name another with --book.")
+    # Looked at before anything is set on the connection: the file of another program stays as it is.
+    with _plain_errors(str(path)), closing(sqlite3.connect(path, timeout=BUSY_TIMEOUT_MS / 1000)) as connection:
+        tables = {name for (name,) in connection.execute("SELECT name FROM sqlite_master WHERE type = 'table'")}
+    if not tables.issuperset(_TABLES_OF_A_BOOK):
+        raise BookError(f"{path} is not a book: it holds other tables. Name another with --book.")
 
 
 def _engine(where: str | Path, path: Path | None) -> Engine:
@@ -170,7 +175,7 @@ def _begin(connection: Connection) -> None:
 def _bring_up_to_date(book: Book, path: Path | None) -> None:
     with book.reading() as connection:
         found = inspect(connection)
-        if not found.has_table("alembic_version") or not found.has_table("book_write"):
+        if not all(found.has_table(name) for name in _TABLES_OF_A_BOOK):
             raise BookError(f"{book.where} is not a book: it holds other tables. Name another with --book.")
         version = connection.execute(text("SELECT version_num FROM alembic_version")).scalar()
     if version == NEWEST_MIGRATION:
@@ -178,8 +183,14 @@ def _bring_up_to_date(book: Book, path: Path | None) -> None:
     if str(version) > NEWEST_MIGRATION:
         raise BookError(f"{book.where} was written by a newer wearbook: bring this one up to date to open it.")
     if path is not None:
-        shutil.copy2(path, path.with_name(f"{path.name}.before-{NEWEST_MIGRATION}"))
+        _copy_file(path, path.with_name(f"{path.name}.before-{NEWEST_MIGRATION}"))
     _migrate(book)
+
+
+def _copy_file(path: Path, copy: Path) -> None:
+    """A whole copy, with what still lies in the write-ahead log."""
+    with closing(sqlite3.connect(path)) as source, closing(sqlite3.connect(copy)) as target:
+        source.backup(target)
 
 
 def _migrate(book: Book) -> None:

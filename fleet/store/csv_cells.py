@@ -85,16 +85,23 @@ def parse_moment(written: str, zone: tzinfo) -> tuple[datetime, datetime | None]
             start = datetime.combine(day, time.min, zone)
             return _fixed(start), _fixed(datetime.combine(day + timedelta(days=1), time.min, zone))
         moment = datetime.fromisoformat(written)
+        return (moment if moment.tzinfo is not None else _in_zone(moment, zone, written)), None
     except (ValueError, OverflowError):
         raise RecordError(f"is {written!r}, not a date and time such as 2026-11-30 17:45") from None
-    if moment.tzinfo is not None:
-        return moment, None
+
+
+def states_offset(written: str) -> bool:
+    """Whether a moment that can be read was written with its offset from UTC."""
+    return len(written) != 10 and datetime.fromisoformat(written).tzinfo is not None
+
+
+def _in_zone(moment: datetime, zone: tzinfo, written: str) -> datetime:
     local = moment.replace(tzinfo=zone)
     if local.utcoffset() != moment.replace(tzinfo=zone, fold=1).utcoffset():
         back = local.astimezone(UTC).astimezone(zone).replace(tzinfo=None)
         came = "twice" if back == moment else "never"
         raise RecordError(f"is {written!r}, a clock time that came {came} that night: write its offset too (+01:00)")
-    return _fixed(local), None
+    return _fixed(local)
 
 
 def _fixed(moment: datetime) -> datetime:

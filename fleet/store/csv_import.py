@@ -29,11 +29,12 @@ from fleet.records.ledger import (
 )
 from fleet.records.set_up import SET_UP, Settings
 from fleet.store.book import Book
-from fleet.store.csv_cells import parse_cell, parse_moment
+from fleet.store.csv_cells import parse_cell, parse_moment, states_offset
 from fleet.store.csv_references import References
 from fleet.store.csv_row_references import RowReferences
 from fleet.store.csv_rows import Row, read_folder
-from fleet.store.reading import read_history
+from fleet.store.reading import read_history, record_ids_in
+from fleet.store.tables import ID_LENGTH
 from fleet.store.writing import Claim, Entry, Writer, new_record_id, write
 
 # Later kinds may refer to earlier ones.
@@ -53,6 +54,8 @@ ORDER: tuple[type[Record], ...] = (
     Plate,
 )
 Progress = Callable[[str, int], None]
+_ENTERED_AT = FieldSpec("moment", "when the row was first entered", optional=True)
+_ENTERED_BY = FieldSpec("code", "who entered it", optional=True)
 
 
 @dataclass(frozen=True)
@@ -71,6 +74,7 @@ class _Reading:
 
     references: References
     zone: tzinfo
+    taken: set[str]
     problems: list[str] = field(default_factory=list)
     records: list[Record] = field(default_factory=list)
     claims: dict[str, Claim] = field(default_factory=dict)
@@ -131,7 +135,7 @@ def _read(book: Book, folder: Path, progress: Progress | None) -> _Reading:
     zone, zone_problem = _zone_of(rows.get(Settings, []), history.zone)
     if zone_problem is not None:
         problems.append(zone_problem)
-    reading = _Reading(References(history), zone, problems)
+    reading = _Reading(References(history), zone, record_ids_in(book), problems)
     if problems:
         return reading
     for cls in ORDER:
@@ -190,7 +194,7 @@ def _resolve_moved_parts(reading: _Reading) -> None:
     moved: list[Record] = []
     for at, record in enumerate(reading.records):
         row = reading.sources[record.record_id]
-        if not isinstance(record, Fitment) or "from_slot" not in row.cells:
+        if not isinstance(record, Fitment) or not any(name.startswith("from_") for name in row.cells):
             continue
         try:
             context = RowReferences(reading.references, reading.zone, row, record.happened_at)
@@ -215,11 +219,12 @@ def _records_of_row(reading: _Reading, cls: type[Record], row: Row) -> list[Reco
         reading.problems.append(f"{row.where}: {error}.")
         return []
     claim = _claim_of(reading, row)
+    own_id = _own_id(reading, row)
     if len(reading.problems) > before:
         return []
     made = []
     for number, target in enumerate(targets):
-        record_id = row.cells["record_id"] if "record_id" in row.cells and number == 0 else new_record_id()
+        record_id = own_id if number == 0 else new_record_id()
         try:
             record = cls(record_id=record_id, **{**values, **target})
         except RecordError as error:
@@ -261,7 +266,7 @@ def _is_needed(cls: type[Record], name: str, spec: FieldSpec) -> bool:
 def _moments(reading: _Reading, spec: FieldSpec, written: str) -> dict[str, datetime]:
     parse_cell(spec, written, reading.zone)
     start, end = parse_moment(written, reading.zone)
-    if len(written) <= 19:
+    if not states_offset(written):
         reading.zone_assumed_for += 1
     return {"happened_at": start} if end is None else {"happened_at": start, "happened_until": end}
 
@@ -273,9 +278,25 @@ def _claim_of(reading: _Reading, row: Row) -> Claim | None:
     if written is None:
         reading.problems.append(f"{row.where}: entered_by needs entered_at beside it.")
         return None
+    column = "entered_at"
     try:
-        entered_at = parse_moment(written, reading.zone)[0]
+        entered_at = parse_cell(_ENTERED_AT, written, reading.zone)
+        column = "entered_by"
+        entered_by = parse_cell(_ENTERED_BY, row.cells.get(column, "import"), reading.zone)
     except RecordError as error:
-        reading.problems.append(f"{row.where}: entered_at {error}.")
+        reading.problems.append(f"{row.where}: {column} {error}.")
         return None
-    return Claim(entered_at.astimezone(UTC), row.cells.get("entered_by", "import"))
+    return Claim(entered_at.astimezone(UTC), entered_by)
+
+
+def _own_id(reading: _Reading, row: Row) -> str:
+    """The id that a row states for its record, or a new one."""
+    record_id = row.cells.get("record_id")
+    if record_id is None:
+        return new_record_id()
+    if len(record_id) > ID_LENGTH or not record_id.isprintable():
+        reading.problems.append(f"{row.where}: record_id is no id of at most {ID_LENGTH} characters.")
+    elif record_id in reading.taken:
+        reading.problems.append(f"{row.where}: record_id {record_id} is there already; leave the row out.")
+    reading.taken.add(record_id)
+    return record_id

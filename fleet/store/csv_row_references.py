@@ -148,12 +148,12 @@ class RowReferences:
 
     def source_of_moved_part(self) -> str:
         """The fitment that a moved part was taken out of."""
-        unit, written = self._code("unit", "from_unit"), self.row.cells["from_slot"]
+        unit = self._code("unit", "from_unit")
         if unit is None:
-            raise RecordError("from_slot needs from_unit beside it")
-        design = self.references.history.one(Unit, unit).unit_design
-        slot = self._code("slot", "from_slot", design)
-        assert slot is not None, written
+            raise RecordError("from_unit is empty; name the module that a moved part comes from")
+        slot = self._code("slot", "from_slot", self.references.history.one(Unit, unit).unit_design)
+        if slot is None:
+            raise RecordError("from_slot is empty; name the slot that a moved part comes from")
         return self.references.last_removed(unit, slot, self._place("from_place") or 1, self.moment)
 
     def _broken_by(self) -> str | None:

@@ -91,6 +91,8 @@ def read_folder(folder: Path, problem: Callable[[str], None]) -> dict[type[Recor
             problem(f"{path.name}: no such kind of record{f'; did you mean {near[0]}' if near else ''}.")
         elif path.is_symlink():
             problem(f"{path.name}: is a link to somewhere else; put the file itself there.")
+        elif not path.is_file():
+            problem(f"{path.name}: is not a plain file.")
         else:
             found[by_name[path.name]] = _read_file(path, by_name[path.name], problem)
     if not found and not any(folder.glob("*.csv")):
@@ -121,6 +123,8 @@ def _read_file(path: Path, cls: type[Record], problem: Callable[[str], None]) ->
                 rows.append(Row(path.name, reader.line_num, filled))
     except UnicodeDecodeError:
         problem(f"{path.name}: is not UTF-8 text; save it as CSV in UTF-8.")
+    except OSError as error:
+        problem(f"{path.name}: cannot be read ({error.strerror}).")
     except csv.Error as error:
         problem(f"{path.name}: is not a CSV file that can be read ({error}).")
     return rows

@@ -157,6 +157,18 @@ def lift_hold(book: Book, hold: str, why: str, now: datetime, entered_by: str) -
     return Receipt(writer.write_number, "Released.")
 
 
+def open_hold_on(history: History, robot: Robot, position: Position | None) -> str | None:
+    """The hold still open on a robot, or on the module in one of its joints; None if nobody holds it."""
+    lifted = {release.hold for release in history.of(Release).values()}
+    unit = None if position is None else whereabouts_of(history).unit_in(position.record_id, history.as_of)
+    for hold in history.of(Hold).values():
+        subject = hold.robot if position is None else hold.unit
+        wanted = robot.record_id if position is None else unit
+        if hold.record_id not in lifted and subject is not None and subject == wanted:
+            return hold.record_id
+    return None
+
+
 def undo(book: Book, write_number: int, now: datetime, entered_by: str, reason: str = "undone") -> Receipt:
     """Take back everything that one write brought in; the records stay in the book as withdrawn."""
     with write(book, Entry(now, entered_by, f"undo of write {write_number}")) as writer:

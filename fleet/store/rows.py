@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from datetime import UTC, datetime, timedelta, timezone
+from functools import cache
 from typing import Any, TypeVar
 
 from sqlalchemy import RowMapping
@@ -22,8 +23,12 @@ def microseconds_of(moment: datetime) -> int:
 
 def moment_of(microseconds: int, offset_minutes: int = 0) -> datetime:
     """The time, in the offset it was stated in."""
-    zone = UTC if offset_minutes == 0 else timezone(timedelta(minutes=offset_minutes))
-    return (_EPOCH + timedelta(microseconds=microseconds)).astimezone(zone)
+    return _epoch_in(offset_minutes) + timedelta(microseconds=microseconds)
+
+
+@cache
+def _epoch_in(offset_minutes: int) -> datetime:
+    return _EPOCH.astimezone(timezone(timedelta(minutes=offset_minutes)) if offset_minutes else UTC)
 
 
 def row_of(record: Record, stamp: Stamp) -> dict[str, Any]:
@@ -66,4 +71,7 @@ def record_of(cls: type[_R], row: RowMapping) -> _R:
         reason=row["version_reason"],
         withdrawn=bool(row["withdrawn"]),
     )
-    return cls(record_id=row["record_id"], stamp=stamp, **values)
+    # Checked when it was written, and held to its bounds by the tables: not checked again on every reading.
+    record = cls.__new__(cls)
+    record.__dict__.update(values, record_id=row["record_id"], stamp=stamp)
+    return record

@@ -1,0 +1,67 @@
+"""From the life of a part type to what is said of it: by what age one in ten, and half, are gone, and its curve."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fleet.fits.part_lives import PartLife
+from fleet.forecasts.hours_life import HoursLife
+
+FloatArray = NDArray[np.float64]
+CURVE_POINTS = 120
+
+
+@dataclass(frozen=True)
+class AgeRange:
+    """An age in running hours: its middle value, and the range that should hold it 8 times in 10."""
+
+    middle: float
+    low: float
+    high: float
+
+
+@dataclass(frozen=True, eq=False)
+class PartOutlook:
+    """What is said of one life, in running hours of a new part.
+
+    `hours`, `reliability`, `low` and `high` are arrays of shape (n,): the mean chance to reach an age, and its 80 %
+    band.
+    """
+
+    b10: AgeRange
+    b50: AgeRange
+    hours: FloatArray
+    reliability: FloatArray
+    low: FloatArray
+    high: FloatArray
+
+
+def part_outlook(life: PartLife, in_hours: HoursLife) -> PartOutlook:
+    """Ages and curve of one life."""
+    oldest = max(
+        (
+            float(mode.data.unfit.lower.max()) / life.per_hour[mode.mode.clock]
+            for mode in life.modes
+            if len(mode.data.unfit)
+        ),
+        default=0.0,
+    )
+    b50 = _range(in_hours, 50.0)
+    hours = np.linspace(0.0, max(1.2 * oldest, 1.5 * b50.middle), CURVE_POINTS)
+    curves = [
+        in_hours.reliability(hours),
+        in_hours.reliability_quantile(hours, 0.1),
+        in_hours.reliability_quantile(hours, 0.9),
+    ]
+    for values in (hours, *curves):
+        values.setflags(write=False)
+    return PartOutlook(_range(in_hours, 10.0), b50, hours, *curves)
+
+
+def _range(in_hours: HoursLife, percent: float) -> AgeRange:
+    ages = in_hours.b_life_by_draw(percent)
+    low, middle, high = np.quantile(ages, [0.1, 0.5, 0.9])
+    return AgeRange(float(middle), float(low), float(high))

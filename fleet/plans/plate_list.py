@@ -1,0 +1,113 @@
+"""From the spares list, yields, printers and spools to the first plate list."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from datetime import datetime, timedelta
+
+from fleet.forecasts.part_demand import DAYS_A_WEEK, PartDemand
+from fleet.plans.plates import PlatePlan, PresenceWindow, PrinterNow, PrintNeed, SpoolNow, plan_plates
+from fleet.plans.spare_list import SpareNeed
+from fleet.records.history import History
+from fleet.records.ledger import Plate
+from fleet.records.set_up import Lot, PartType, Presence, Printer, Revision, Spool
+from fleet.records.vocabulary import WEEKDAYS
+
+
+@dataclass(frozen=True)
+class PlateList:
+    """What to print: the needs behind it, and the plates by printer."""
+
+    needs: tuple[PrintNeed, ...]
+    plan: PlatePlan
+
+
+def plate_list(
+    history: History, spares: Sequence[SpareNeed], demands: Mapping[str, PartDemand], target: float
+) -> PlateList:
+    """Plates for every printed part that is short, the first due first.
+
+    Parameters
+    ----------
+    target : float
+        Chance with which enough good parts should come off the plates.
+    """
+    needs = tuple(_need(history, spare) for spare in spares if spare.printed and _wanted(spare) > 0)
+    plan = plan_plates(
+        needs,
+        _printers(history),
+        [SpoolNow(spool.code, spool.material, spool.grams_left) for spool in history.of(Spool).values()],
+        [
+            PresenceWindow(WEEKDAYS.index(window.weekday), window.start_minute, window.end_minute)
+            for window in history.of(Presence).values()
+        ],
+        history.as_of,
+        confidence=target,
+        zone=history.zone_name,
+    )
+    return PlateList(needs, plan)
+
+
+def _need(history: History, spare: SpareNeed) -> PrintNeed:
+    part_type = history.one(PartType, spare.part_type)
+    assert part_type.parts_per_plate is not None and part_type.print_minutes is not None
+    assert part_type.plate_minutes is not None and part_type.nozzle_mm is not None and part_type.material is not None
+    made = [r.code for r in history.of(Revision).values() if r.part_type == spare.part_type and not r.superseded]
+    good, started = _yield(history, spare.part_type)
+    return PrintNeed(
+        part=spare.code,
+        label=spare.label,
+        revision=made[-1] if made else "",
+        good_wanted=_wanted(spare),
+        due=_due(history, spare),
+        material=part_type.material,
+        nozzle_mm=part_type.nozzle_mm,
+        parts_per_plate=part_type.parts_per_plate,
+        minutes_per_part=part_type.print_minutes,
+        minutes_per_plate=part_type.plate_minutes,
+        grams_per_part=part_type.mass_g,
+        good=good,
+        started=started,
+    )
+
+
+def _wanted(spare: SpareNeed) -> int:
+    """Good parts to print so that the stock lasts through the weeks shown; what is on the printers counts."""
+    return max(spare.short, spare.short_by_end) - spare.printing
+
+
+def _due(history: History, spare: SpareNeed) -> datetime:
+    """Before the first week in which the stock may not last; at the latest when it could be restocked."""
+    weeks = spare.short_from_week
+    days = spare.days_until_restocked if weeks is None else (weeks - 1) * DAYS_A_WEEK
+    return history.as_of + timedelta(days=max(days, 1))
+
+
+def _yield(history: History, part_type: str) -> tuple[int, int]:
+    """Good parts and parts started on all finished plates of a part type."""
+    plates = [
+        plate
+        for plate in history.of(Plate).values()
+        if plate.good is not None and history.one(Lot, plate.lot).part_type == part_type
+    ]
+    return sum(plate.good or 0 for plate in plates), sum(plate.started for plate in plates)
+
+
+def _printers(history: History) -> list[PrinterNow]:
+    """Each printer, free now unless a plate is still on it: then after its expected end."""
+    busy: dict[str, datetime] = {}
+    for plate in history.of(Plate).values():
+        if plate.good is None:
+            part_type = history.one(PartType, history.one(Lot, plate.lot).part_type)
+            minutes = (part_type.plate_minutes or 0) + plate.started * (part_type.print_minutes or 0)
+            busy[plate.printer] = plate.happened_at + timedelta(minutes=minutes)
+    return [
+        PrinterNow(
+            printer.code,
+            printer.nozzle_mm,
+            printer.change_minutes,
+            max(busy.get(printer.record_id, history.as_of), history.as_of),
+        )
+        for printer in history.of(Printer).values()
+    ]

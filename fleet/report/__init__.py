@@ -1,0 +1,1 @@
+"""From results to text tables and JSON documents."""
