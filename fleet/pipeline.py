@@ -24,6 +24,7 @@ from fleet.plans.spare_list import SpareNeed, spare_list
 from fleet.records.history import History
 
 DRAWS = 1000
+SUMMARY_DRAWS = 250
 SEED = 20260101
 
 
@@ -74,7 +75,7 @@ def read_out(history: History, question: Question) -> ReadOut:
     slots = slots_now(history, ages, lives)
     plans = robot_plans(history, question.session_hours)
     stop, unfit = _draws(lives, "stop"), _draws(lives, "unfit")
-    in_hours = {key: HoursLife(unfit[key], life.per_hour) for key, life in lives.items()}
+    in_hours = {key: HoursLife(unfit[key].thinned(SUMMARY_DRAWS), life.per_hour) for key, life in lives.items()}
     demands = part_demands(history, ages, slots, unfit, plans, question.weeks)
     spares = spare_list(history, demands, lives, question.target)
     return ReadOut(

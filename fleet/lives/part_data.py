@@ -63,7 +63,9 @@ class PartData:
 def life_key_of(history: History, fitment: Fitment) -> LifeKey:
     """Which life a fitment belongs to; a moved part keeps the lot and revision it came with."""
     source = fitment
-    while source.lot is None and source.revision is None and source.comes_from in history.of(Fitment):
+    while source.lot is None and source.revision is None and source.comes_from is not None:
+        if source.comes_from not in history.of(Fitment):  # where it came from was entered only later
+            break
         source = history.one(Fitment, source.comes_from)
     part_type = history.one(Slot, fitment.slot).part_type
     lot = None if source.lot is None else history.one(Lot, source.lot)

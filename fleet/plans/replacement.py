@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
-from typing import Protocol
+from typing import Protocol, runtime_checkable
 
 import numpy as np
 from numpy.typing import NDArray
@@ -26,6 +26,8 @@ FLAT = 0.05
 _GRID = 160
 _INTEGRAL_STEPS = 8192
 _LIGHTEST = 1e-7
+_DRAWN_GRID = 600
+_LAST_HAZARD = 60.0
 _NOTHING = 1e-12
 _TINY = 1e-300
 _LARGEST_EXPONENT = 690.0
@@ -36,6 +38,19 @@ class Reliability(Protocol):
 
     def reliability(self, t: FloatArray, /) -> FloatArray:
         """Reliability at ages t. [1]"""
+        ...
+
+
+@runtime_checkable
+class DrawnLife(Protocol):
+    """A life known by equally weighted draws: a part with several modes, each in its own clock."""
+
+    def cumulative_hazard_by_draw(self, t: FloatArray, /) -> FloatArray:
+        """Cumulative hazard of every draw at ages t, shape (n_draws, len(t)). [1]"""
+        ...
+
+    def growth_by_draw(self) -> FloatArray:
+        """The shape that one Weibull would have at the draw's B10 life, shape (n_draws,). [1]"""
         ...
 
 
@@ -72,7 +87,7 @@ class ReplacementAge:
 
 
 def replacement_age(
-    life_or_posterior: ShapeScale | Reliability, planned_cost: float, failure_cost: float
+    life_or_posterior: ShapeScale | Reliability | DrawnLife, planned_cost: float, failure_cost: float
 ) -> ReplacementAge:
     """Age at which planned replacement costs least per unit of the clock.
 
@@ -81,7 +96,7 @@ def replacement_age(
 
     Parameters
     ----------
-    life_or_posterior : WeibullFit, WeibullPosterior, or anything with `reliability(array)`
+    life_or_posterior : WeibullFit, WeibullPosterior, DrawnLife, or anything with `reliability(array)`
         Life of one part. [clock]
     planned_cost, failure_cost : float
         Cost of one replacement before, and after, failure. [any one currency]
@@ -104,7 +119,9 @@ def replacement_age(
             f"Planned replacement costs {planned_cost}, failure {failure_cost}: "
             "the first must be above 0 and below the second."
         )
-    if hasattr(life_or_posterior, "shape") and hasattr(life_or_posterior, "scale"):
+    if isinstance(life_or_posterior, DrawnLife):
+        lives = _drawn_lives(life_or_posterior, planned_cost, failure_cost)
+    elif hasattr(life_or_posterior, "shape") and hasattr(life_or_posterior, "scale"):
         lives = _weibull_lives(life_or_posterior, planned_cost, failure_cost)
     else:
         lives = _single_life(life_or_posterior, planned_cost, failure_cost)
@@ -170,6 +187,36 @@ def _weibull_lives(life: object, planned: float, failure: float) -> _Lives:
     early_age = float(np.exp(np.min((log_scale + np.log(1e-5) / np.maximum(shape, 1.0))[heavy])))
     late_age = float(np.exp(np.max((log_scale + np.log(25.0) / np.maximum(shape, 0.5))[heavy])))
     return _Lives(rates, failure / mean_life, weight, early_age, late_age, early)
+
+
+def _drawn_lives(life: DrawnLife, planned: float, failure: float) -> _Lives:
+    """Every draw's reliability integrated on one grid of ages, even in their logarithm."""
+    shortest = _age_where(life, 1e-5)
+    grid = np.exp(np.linspace(np.log(shortest), np.log(_age_where(life, _LAST_HAZARD)), _DRAWN_GRID))
+    at = np.exp(-life.cumulative_hazard_by_draw(grid))
+    pieces = 0.5 * (at[:, 1:] + at[:, :-1]) * np.diff(grid)
+    first = grid[0] * np.ones((at.shape[0], 1))
+    lived = np.concatenate([first, first + np.cumsum(pieces, axis=1)], axis=1)
+
+    def rates(ages: FloatArray) -> FloatArray:
+        good = np.exp(-life.cumulative_hazard_by_draw(ages))
+        cell = np.clip(np.searchsorted(grid, ages, side="right") - 1, 0, grid.size - 1)
+        survived = lived[:, cell] + 0.5 * (at[:, cell] + good) * (ages - grid[cell])
+        return np.asarray((planned * good + failure * (1.0 - good)) / np.maximum(survived, _TINY))
+
+    growth = life.growth_by_draw()
+    weight = np.full(growth.size, 1.0 / growth.size)
+    return _Lives(rates, failure / lived[:, -1], weight, shortest, float(grid[-1]), float((growth < 1.0).mean()))
+
+
+def _age_where(life: DrawnLife, hazard: float) -> float:
+    """Age at which the middle draw's cumulative hazard reaches a value, by bisection in the logarithm."""
+    low, high = np.log(1e-9), np.log(1e13)
+    for _ in range(60):
+        middle = 0.5 * (low + high)
+        reached = np.median(life.cumulative_hazard_by_draw(np.array([np.exp(middle)]))) > hazard
+        low, high = (low, middle) if reached else (middle, high)
+    return float(np.exp(high))
 
 
 def _single_life(life: object, planned: float, failure: float) -> _Lives:

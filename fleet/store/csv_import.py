@@ -248,6 +248,7 @@ def _plain_values(reading: _Reading, cls: type[Record], row: Row) -> dict[str, A
                 values.update(_moments(reading, spec, written))
             else:
                 values[name] = parse_cell(spec, written, reading.zone)
+            reading.zone_assumed_for += spec.kind == "moment" and not states_offset(written)
         except RecordError as error:
             reading.problems.append(f"{row.where}: {column_of(name, spec)} {error}.")
     missing = [
@@ -266,8 +267,6 @@ def _is_needed(cls: type[Record], name: str, spec: FieldSpec) -> bool:
 def _moments(reading: _Reading, spec: FieldSpec, written: str) -> dict[str, datetime]:
     parse_cell(spec, written, reading.zone)
     start, end = parse_moment(written, reading.zone)
-    if not states_offset(written):
-        reading.zone_assumed_for += 1
     return {"happened_at": start} if end is None else {"happened_at": start, "happened_until": end}
 
 
