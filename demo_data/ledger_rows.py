@@ -3,15 +3,16 @@
 from __future__ import annotations
 
 from collections import Counter
-from datetime import datetime, timedelta
+from datetime import datetime, time, timedelta
 from random import Random
 
 from demo_data.chance import between, whole_between
-from demo_data.fleet_plan import LAST_DAY
+from demo_data.fleet_plan import KIT_DAY, LAST_DAY, ZONE
 
 Row = dict[str, str]
 Value = str | int | float | bool | datetime | None
 
+SET_UP_ENTERED = datetime.combine(KIT_DAY, time(9), ZONE)
 LATE_SHARE = {"session": 0.04, "failure": 0.03, "removal": 0.02, "fitment": 0.02}
 LATE_DAYS = (1, 6)
 _ORDERED = ("placement", "fitment", "removal", "failure", "bench_check", "stock_move")
@@ -39,18 +40,21 @@ class LedgerRows:
         self._sequences: Counter[datetime] = Counter()
 
     def add(self, kind: str, **values: Value) -> Row:
-        """Add a row of a set-up record; None and "" leave the column empty."""
+        """Add a row of a set-up record, entered by the planner; None and "" leave the column empty."""
+        return self._put(kind, {**values, "entered_at": SET_UP_ENTERED, "entered_by": "planner"})
+
+    def _put(self, kind: str, values: dict[str, Value]) -> Row:
         row = {column: written(value) for column, value in values.items()}
         self._rows.setdefault(kind, []).append(row)
         return row
 
     def happened(self, kind: str, moment: datetime, entered_by: str, **values: Value) -> Row:
         """Add a row of the ledger; a few are entered days late, by the field lead."""
-        ordered = {}
+        ordered: dict[str, Value] = {}
         if kind in _ORDERED:
             ordered["sequence"] = self._sequences[moment]
             self._sequences[moment] += 1
-        row = self.add(kind, happened_at=moment, **ordered, **values)
+        row = self._put(kind, {"happened_at": moment, **ordered, **values})
         ended = values.get("ended_at")
         known_from = ended if isinstance(ended, datetime) else moment
         entered_at, who = self._entry(kind, known_from, entered_by)

@@ -53,6 +53,7 @@ def _add_robots(rows: LedgerRows) -> None:
 
 def _add_parts(rows: LedgerRows) -> None:
     clocks = {(mode.part_type, mode.mode): mode.clock for mode in TRUE_MODES}
+    hidden = {(mode.part_type, mode.mode) for mode in TRUE_MODES if mode.finding == "found worn"}
     for part in PARTS:
         figures = PLATES.get(part.code)
         rows.add(
@@ -71,7 +72,8 @@ def _add_parts(rows: LedgerRows) -> None:
     for slot in SLOTS:
         rows.add("slot", **vars(slot))
     for mode in MODES:
-        rows.add("part_mode", **vars(mode), clock=clocks[mode.part_type, mode.code])
+        found = (mode.part_type, mode.code)
+        rows.add("part_mode", **vars(mode), clock=clocks[found], noticed="at a check" if found in hidden else "in use")
     for part_type, code, superseded, note in REVISIONS:
         rows.add("revision", part_type=part_type, code=code, superseded=superseded, note=note)
 

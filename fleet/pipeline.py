@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -15,6 +15,7 @@ from fleet.forecasts.next_session import NextSession, next_session
 from fleet.forecasts.part_demand import PartDemand, part_demands
 from fleet.forecasts.part_outlook import PartOutlook, part_outlook
 from fleet.forecasts.parts_now import slots_now
+from fleet.forecasts.past_months import MonthForecast, month_forecasts
 from fleet.forecasts.planned_use import robot_plans
 from fleet.lives.ages import Ages, ages_of
 from fleet.lives.part_data import Endpoint, LifeKey, part_data
@@ -90,6 +91,25 @@ def read_out(history: History, question: Question) -> ReadOut:
         plates=plate_list(history, spares, demands, question.target),
         replacements=replacement_list(history, lives, in_hours),
     )
+
+
+def look_back(now: History, months: Sequence[History]) -> tuple[MonthForecast, ...]:
+    """Forecasts of past months, each made with what was known at its start, beside what followed.
+
+    Parameters
+    ----------
+    months : sequence of History
+        What was known at each month's start, oldest first; each month ends where the next starts, the last one now.
+    """
+    ages_now = ages_of(now)
+    ends = [*(later.as_of for later in months[1:]), now.as_of]
+    found: list[MonthForecast] = []
+    for then, end in zip(months, ends, strict=True):
+        ages = ages_of(then)
+        lives = fit_part_lives(then, part_data(then, ages))
+        slots = slots_now(then, ages, lives)
+        found += month_forecasts(then, now, end, ages, slots, _draws(lives, "unfit"), ages_now)
+    return tuple(found)
 
 
 def _draws(lives: Mapping[LifeKey, PartLife], endpoint: Endpoint) -> dict[LifeKey, LifeDraws]:

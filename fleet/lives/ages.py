@@ -53,8 +53,9 @@ class PartSpan:
 
 @dataclass(frozen=True, eq=False)
 class Ages:
-    """The ages of all parts that were ever fitted."""
+    """The ages of all parts that were ever fitted, as of one moment."""
 
+    as_of: datetime
     spans: tuple[PartSpan, ...]
     meters: Meters
     whereabouts: Whereabouts
@@ -63,6 +64,12 @@ class Ages:
     def age_of(self, span: PartSpan, moment: datetime) -> Age:
         """Age of these parts at a moment between fitting and end, by clock."""
         return self.ages_of_unit(span.fitment, [moment])[0]
+
+    def end_of(self, span: PartSpan) -> datetime:
+        """When these parts failed or were taken out; the moment of these ages while they run."""
+        if span.failure is not None:
+            return span.failure.happened_at
+        return self.as_of if span.removal is None else span.removal.happened_at
 
     def ages_of_unit(self, fitment: Fitment, moments: Sequence[datetime]) -> list[Age]:
         """Age of a fitment at each moment, by clock."""
@@ -97,7 +104,7 @@ def ages_of(history: History) -> Ages:
                 age=_age(start, last - first, fitment.happened_at, end),
             )
         )
-    return Ages(tuple(spans), meters, whereabouts, MappingProxyType(starts))
+    return Ages(history.as_of, tuple(spans), meters, whereabouts, MappingProxyType(starts))
 
 
 def _groups(whereabouts: Whereabouts) -> list[list[FittedPart]]:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from bisect import bisect_left
 from collections import defaultdict
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from datetime import datetime
 from typing import Literal
@@ -94,7 +94,7 @@ def part_data(history: History, ages: Ages) -> dict[LifeKey, PartData]:
 def _part_data(history: History, ages: Ages, checks: _Checks, key: LifeKey, spans: Sequence[PartSpan]) -> PartData:
     modes = [mode for mode in history.of(PartMode).values() if mode.part_type == key.part_type]
     known = [span for span in spans if span.known]
-    seen = [_observe(history, ages, checks, span) for span in known]
+    seen = [_observe(history, ages, checks, span, modes) for span in known]
     failed = [row for row in seen if row.failure is not None]
     return PartData(
         key=key,
@@ -134,7 +134,8 @@ class _Observed:
     """One span as the likelihood sees it: in (lower, upper] its failure, exact where both are equal.
 
     `failure` is None for a suspension, and for a part that another part's failure broke; `stopped` says whether the
-    failure counts for the endpoint *stop*.
+    failure counts for the endpoint *stop*. `last_seen_good` holds, for each mode that shows only when looked at, the
+    age at which the part was last looked at and had not failed by it.
     """
 
     span: PartSpan
@@ -142,15 +143,32 @@ class _Observed:
     stopped: bool
     lower: Age
     upper: Age
+    last_seen_good: Mapping[str, Age]
 
 
-def _observe(history: History, ages: Ages, checks: _Checks, span: PartSpan) -> _Observed:
+def _observe(history: History, ages: Ages, checks: _Checks, span: PartSpan, modes: Sequence[PartMode]) -> _Observed:
     failure = span.failure
-    if failure is None or failure.cause == "another part's failure":
-        return _Observed(span, None, False, span.age, span.age)
+    own = failure is not None and failure.cause != "another part's failure"
+    hidden = [m for m in modes if m.noticed == "at a check" and not (own and failure and failure.mode == m.record_id)]
+    seen_good = {mode.record_id: _age_last_seen_good(ages, checks, span, mode) for mode in hidden}
+    if failure is None or not own:
+        return _Observed(span, None, False, span.age, span.age, seen_good)
     start = _last_known_good(history, checks, span, failure)
     lower = span.age if start is None else ages.age_of(span, start)
-    return _Observed(span, failure, _counts_as_stop(history, span, failure), lower, span.age)
+    return _Observed(span, failure, _counts_as_stop(history, span, failure), lower, span.age, seen_good)
+
+
+def _age_last_seen_good(ages: Ages, checks: _Checks, span: PartSpan, mode: PartMode) -> Age:
+    """Age at which a part was last seen to be good in a mode that shows only when looked at.
+
+    A part taken out while good was in someone's hand. Where no check of the module was ever noted, people are taken
+    to look after every session.
+    """
+    in_hand = span.removal is not None and span.removal.reason == "replaced while good"
+    if (in_hand and span.failure is None) or not checks.ever(span.fitment):
+        return span.age
+    end = ages.end_of(span)
+    return ages.age_of(span, checks.last_good(span.fitment, mode.record_id, end))
 
 
 def _counts_as_stop(history: History, span: PartSpan, failure: Failure) -> bool:
@@ -163,7 +181,7 @@ def _counts_as_stop(history: History, span: PartSpan, failure: Failure) -> bool:
 def _last_known_good(history: History, checks: _Checks, span: PartSpan, failure: Failure) -> datetime | None:
     """The moment after which the failure must have happened; None if its own moment is known exactly."""
     if failure.finding == "found worn" or failure.how_found == "at a check":
-        return checks.last_good(span.fitment, failure)
+        return checks.last_good(span.fitment, failure.mode, failure.happened_at)
     if failure.happened_until is not None:
         return max(failure.happened_at, span.fitment.happened_at)
     session = None if failure.session is None else history.of(Session).get(failure.session)
@@ -181,14 +199,18 @@ class _Checks:
             if check.verdict == "good":
                 self._good[check.unit].append(check)
 
-    def last_good(self, fitment: Fitment, failure: Failure) -> datetime:
-        """The last check before a failure that could have shown its mode and did not; else when it was fitted."""
-        held = self._good[fitment.unit]
-        at = bisect_left([check.happened_at for check in held], failure.happened_at)
+    def ever(self, fitment: Fitment) -> bool:
+        """Whether this module was ever noted as checked."""
+        return bool(self._good.get(fitment.unit))
+
+    def last_good(self, fitment: Fitment, mode: str, before: datetime) -> datetime:
+        """The last check before a moment that could have shown a mode and did not; else when the part was fitted."""
+        held = self._good.get(fitment.unit, [])
+        at = bisect_left([check.happened_at for check in held], before)
         for check in reversed(held[:at]):
             if check.happened_at <= fitment.happened_at:
                 break
-            if check.slot in (None, fitment.slot) and check.mode in (None, failure.mode):
+            if check.slot in (None, fitment.slot) and check.mode in (None, mode):
                 return check.happened_at
         return fitment.happened_at
 
@@ -224,4 +246,8 @@ def _row(seen: _Observed, mode: PartMode, endpoint: Endpoint) -> _Row | None:
         return max(lower, entry), upper, entry, float(span.count), records
     # A failure of another mode suspends at the middle of its interval; one that does not count here, at its finding.
     suspended = upper if seen.failure is None or own else max(entry, 0.5 * (lower + upper))
+    if endpoint == "unfit" and mode.record_id in seen.last_seen_good:
+        suspended = seen.last_seen_good[mode.record_id].get(clock, entry)
+    if suspended <= entry:
+        return None
     return suspended, float("inf"), entry, float(span.count), records

@@ -18,7 +18,7 @@ from fleet.records.fields import (
     text,
     whole,
 )
-from fleet.records.vocabulary import CLOCKS, MECHANISMS, PART_SOURCES, SIDES, WEEKDAYS
+from fleet.records.vocabulary import CLOCKS, MECHANISMS, NOTICED, PART_SOURCES, SIDES, WEEKDAYS
 
 
 @record("settings")
@@ -138,6 +138,7 @@ class PartMode(Record):
     mechanism: str = choice("the physics behind it", MECHANISMS)
     clock: str = choice("what it ages by", CLOCKS)
     share: float = number("share of early failures believed to come from this mode", 0.001, 1)
+    noticed: str = choice("whether it shows by itself in use, or only when looked at", NOTICED, default="in use")
 
 
 @record("revision")

@@ -22,6 +22,8 @@ MECHANISMS = (
 # A failure's finding decides its endpoint: only the first one stopped the robot.
 FINDINGS = ("stopped", "over its limit", "found worn")
 CAUSES = ("design", "print", "assembly", "operation", "maintenance", "another part's failure", "unknown")
+# How a mode comes to light: by itself while the robot runs, or only when someone looks on the bench.
+NOTICED = ("in use", "at a check")
 HOW_FOUND = ("during the session", "after the session", "at a check", "unknown")
 
 REMOVAL_REASONS = ("failed", "found worn", "replaced while good", "moved", "broken by another part", "unknown")

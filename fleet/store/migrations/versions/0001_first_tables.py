@@ -348,6 +348,7 @@ def _part_mode_version() -> None:
         sa.Column("mechanism", sa.String(length=60), nullable=False),
         sa.Column("clock", sa.String(length=60), nullable=False),
         sa.Column("share", sa.Float(), nullable=False),
+        sa.Column("noticed", sa.String(length=60), nullable=False),
         sa.CheckConstraint(
             "clock IN ('hours', 'load_hours', 'turns', 'impacts', 'days')", name=op.f("ck_part_mode_version_clock")
         ),
@@ -355,6 +356,7 @@ def _part_mode_version() -> None:
             "mechanism IN ('wear', 'fatigue', 'overload', 'layer split', 'creep', 'loosening', 'corrosion', 'ageing', 'assembly', 'unknown')",
             name=op.f("ck_part_mode_version_mechanism"),
         ),
+        sa.CheckConstraint("noticed IN ('in use', 'at a check')", name=op.f("ck_part_mode_version_noticed")),
         sa.CheckConstraint("share BETWEEN 0.001 AND 1", name=op.f("ck_part_mode_version_share")),
         sa.ForeignKeyConstraint(["part_type"], ["record_index.record_id"], name=op.f("fk_part_mode_version_part_type")),
         sa.ForeignKeyConstraint(["record_id"], ["record_index.record_id"], name=op.f("fk_part_mode_version_record_id")),
