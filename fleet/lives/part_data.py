@@ -161,10 +161,10 @@ def _observe(history: History, ages: Ages, checks: _Checks, span: PartSpan, mode
 def _age_last_seen_good(ages: Ages, checks: _Checks, span: PartSpan, mode: PartMode) -> Age:
     """Age at which a part was last seen to be good in a mode that shows only when looked at.
 
-    A part taken out while good was in someone's hand. Where no check of the module was ever noted, people are taken
+    A part taken out while good, to be replaced or moved, was in someone's hand. Where no check of the module was ever noted, people are taken
     to look after every session.
     """
-    in_hand = span.removal is not None and span.removal.reason == "replaced while good"
+    in_hand = span.removal is not None and span.removal.reason in ("replaced while good", "moved")
     if (in_hand and span.failure is None) or not checks.ever(span.fitment):
         return span.age
     end = ages.end_of(span)

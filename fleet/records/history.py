@@ -9,11 +9,14 @@ from types import MappingProxyType
 from typing import TypeVar
 from zoneinfo import ZoneInfo
 
-from fleet.records.fields import Record
+from fleet.records.fields import EARLIEST, Record
 from fleet.records.ledger import LEDGER, LedgerRecord
-from fleet.records.set_up import SET_UP, Settings
+from fleet.records.set_up import SET_UP, BeliefAnswer, Presence, Settings, SetUpRecord, UsagePlan
 
 KINDS: tuple[type[Record], ...] = (*SET_UP, *LEDGER)
+
+# Set-up that nothing else refers to and that changes with time: of these, only what holds by then is in a History.
+_DATED = (UsagePlan, Presence, BeliefAnswer)
 
 _R = TypeVar("_R", bound=Record)
 
@@ -63,13 +66,13 @@ class History:
 
 
 def history_of(records: Iterable[Record], as_of: datetime, write_number: int = 0) -> History:
-    """Put records into a History, in order of time.
+    """Put records into a History, in order of time; set-up in the order in which it came to hold.
 
-    Ledger records that happen after `as_of` are left out.
+    Ledger records that happen after `as_of` are left out, and plans, presence and beliefs that hold only later.
     """
     rows: dict[type[Record], list[Record]] = {}
     for entry in records:
-        if isinstance(entry, LedgerRecord) and entry.happened_at > as_of:
+        if _comes_later(entry, as_of):
             continue
         rows.setdefault(type(entry), []).append(entry)
     return History(
@@ -79,12 +82,18 @@ def history_of(records: Iterable[Record], as_of: datetime, write_number: int = 0
     )
 
 
+def _comes_later(entry: Record, as_of: datetime) -> bool:
+    if isinstance(entry, LedgerRecord):
+        return entry.happened_at > as_of
+    return isinstance(entry, _DATED) and entry.valid_from is not None and entry.valid_from > as_of
+
+
 def _by_id(held: list[Record]) -> dict[str, Record]:
-    if held and isinstance(held[0], LedgerRecord):
-        held = sorted(held, key=_ledger_order)
-    return {entry.record_id: entry for entry in held}
+    return {entry.record_id: entry for entry in sorted(held, key=_order_of_time)}
 
 
-def _ledger_order(entry: Record) -> tuple[datetime, int]:
-    assert isinstance(entry, LedgerRecord)
-    return (entry.happened_at, entry.sequence)
+def _order_of_time(entry: Record) -> tuple[datetime, int]:
+    if isinstance(entry, LedgerRecord):
+        return (entry.happened_at, entry.sequence)
+    assert isinstance(entry, SetUpRecord)
+    return (entry.valid_from or EARLIEST, 0)

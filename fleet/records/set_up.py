@@ -21,8 +21,15 @@ from fleet.records.fields import (
 from fleet.records.vocabulary import CLOCKS, MECHANISMS, NOTICED, PART_SOURCES, SIDES, WEEKDAYS
 
 
+@record("set_up")
+class SetUpRecord(Record):
+    """What every row of the set-up carries: from when it holds."""
+
+    valid_from: datetime | None = moment("from when it holds; empty: always", default=None)
+
+
 @record("settings")
-class Settings(Record):
+class Settings(SetUpRecord):
     """The book itself: its title, home zone and currency."""
 
     title: str = text("what this fleet is called")
@@ -31,7 +38,7 @@ class Settings(Record):
 
 
 @record("robot")
-class Robot(Record):
+class Robot(SetUpRecord):
     """A robot of the fleet."""
 
     code: str = short("short label, one robot each")
@@ -48,7 +55,7 @@ class Robot(Record):
 
 
 @record("unit_design")
-class UnitDesign(Record):
+class UnitDesign(SetUpRecord):
     """A kind of joint module."""
 
     code: str = short("short label of the design")
@@ -57,7 +64,7 @@ class UnitDesign(Record):
 
 
 @record("position")
-class Position(Record):
+class Position(SetUpRecord):
     """A place on a robot that holds one joint module."""
 
     robot: str = reference("robot", "the robot")
@@ -71,7 +78,7 @@ class Position(Record):
 
 
 @record("unit")
-class Unit(Record):
+class Unit(SetUpRecord):
     """A physical joint module, wherever it sits."""
 
     code: str = short("label on the module")
@@ -79,7 +86,7 @@ class Unit(Record):
 
 
 @record("part_type")
-class PartType(Record):
+class PartType(SetUpRecord):
     """A kind of part, printed or bought, with what it costs and how it is made or ordered."""
 
     code: str = short("short label")
@@ -110,7 +117,7 @@ class PartType(Record):
 
 
 @record("slot")
-class Slot(Record):
+class Slot(SetUpRecord):
     """A place in a joint design for one or several like parts of one type."""
 
     unit_design: str = reference("unit_design", "the joint design")
@@ -129,7 +136,7 @@ class Slot(Record):
 
 
 @record("part_mode")
-class PartMode(Record):
+class PartMode(SetUpRecord):
     """A way in which parts of a type fail, with the clock that drives it."""
 
     part_type: str = reference("part_type", "the part type")
@@ -142,7 +149,7 @@ class PartMode(Record):
 
 
 @record("revision")
-class Revision(Record):
+class Revision(SetUpRecord):
     """A revision of a part type."""
 
     part_type: str = reference("part_type", "the part type")
@@ -152,7 +159,7 @@ class Revision(Record):
 
 
 @record("lot")
-class Lot(Record):
+class Lot(SetUpRecord):
     """Parts that were made or bought together."""
 
     code: str = short("label on the bag")
@@ -164,7 +171,7 @@ class Lot(Record):
 
 
 @record("printer")
-class Printer(Record):
+class Printer(SetUpRecord):
     """A printer."""
 
     code: str = short("short label")
@@ -174,7 +181,7 @@ class Printer(Record):
 
 
 @record("spool")
-class Spool(Record):
+class Spool(SetUpRecord):
     """A spool of print material."""
 
     code: str = short("label on the spool")
@@ -183,7 +190,7 @@ class Spool(Record):
 
 
 @record("presence")
-class Presence(Record):
+class Presence(SetUpRecord):
     """A weekly time when someone is there to change plates."""
 
     weekday: str = choice("day of the week", WEEKDAYS)
@@ -196,7 +203,7 @@ class Presence(Record):
 
 
 @record("usage_plan")
-class UsagePlan(Record):
+class UsagePlan(SetUpRecord):
     """How much a robot is meant to run."""
 
     robot: str = reference("robot", "the robot")
@@ -206,7 +213,7 @@ class UsagePlan(Record):
 
 
 @record("belief")
-class BeliefAnswer(Record):
+class BeliefAnswer(SetUpRecord):
     """The answer to one question: by what age would 1 in 10 of these parts be gone, give or take what factor?"""
 
     part_type: str = reference("part_type", "the part type")

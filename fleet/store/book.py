@@ -141,7 +141,10 @@ def _refuse_what_is_no_book(path: Path) -> None:
 
 def _engine(where: str | Path, path: Path | None) -> Engine:
     if path is None:
-        return create_engine(str(where))
+        try:
+            return create_engine(str(where))
+        except ImportError:
+            raise BookError("A book in PostgreSQL needs the package psycopg: install psycopg[binary].") from None
     engine = create_engine("sqlite://", creator=lambda: _connect(path), poolclass=_pool())
     event.listen(engine, "begin", _begin)
     return engine
