@@ -91,6 +91,8 @@ def _belief_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_belief_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_belief_version_version")),
+        sa.CheckConstraint("version = 1 OR version_reason IS NOT NULL", name=op.f("ck_belief_version_version_reason")),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_belief_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_belief_version_record_id_version")),
     )
@@ -130,6 +132,10 @@ def _bench_check_version() -> None:
         sa.ForeignKeyConstraint(["unit"], ["record_index.record_id"], name=op.f("fk_bench_check_version_unit")),
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_bench_check_version_write_number")
+        ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_bench_check_version_version")),
+        sa.CheckConstraint(
+            "version = 1 OR version_reason IS NOT NULL", name=op.f("ck_bench_check_version_version_reason")
         ),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_bench_check_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_bench_check_version_record_id_version")),
@@ -188,6 +194,8 @@ def _failure_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_failure_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_failure_version_version")),
+        sa.CheckConstraint("version = 1 OR version_reason IS NOT NULL", name=op.f("ck_failure_version_version_reason")),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_failure_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_failure_version_record_id_version")),
     )
@@ -252,6 +260,8 @@ def _fitment_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_fitment_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_fitment_version_version")),
+        sa.CheckConstraint("version = 1 OR version_reason IS NOT NULL", name=op.f("ck_fitment_version_version_reason")),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_fitment_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_fitment_version_record_id_version")),
     )
@@ -291,6 +301,8 @@ def _hold_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_hold_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_hold_version_version")),
+        sa.CheckConstraint("version = 1 OR version_reason IS NOT NULL", name=op.f("ck_hold_version_version_reason")),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_hold_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_hold_version_record_id_version")),
     )
@@ -326,6 +338,8 @@ def _lot_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_lot_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_lot_version_version")),
+        sa.CheckConstraint("version = 1 OR version_reason IS NOT NULL", name=op.f("ck_lot_version_version_reason")),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_lot_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_lot_version_record_id_version")),
     )
@@ -368,6 +382,10 @@ def _part_mode_version() -> None:
         sa.ForeignKeyConstraint(["record_id"], ["record_index.record_id"], name=op.f("fk_part_mode_version_record_id")),
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_part_mode_version_write_number")
+        ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_part_mode_version_version")),
+        sa.CheckConstraint(
+            "version = 1 OR version_reason IS NOT NULL", name=op.f("ck_part_mode_version_version_reason")
         ),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_part_mode_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_part_mode_version_record_id_version")),
@@ -417,6 +435,10 @@ def _part_type_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_part_type_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_part_type_version_version")),
+        sa.CheckConstraint(
+            "version = 1 OR version_reason IS NOT NULL", name=op.f("ck_part_type_version_version_reason")
+        ),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_part_type_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_part_type_version_record_id_version")),
     )
@@ -448,6 +470,10 @@ def _placement_version() -> None:
         sa.ForeignKeyConstraint(["unit"], ["record_index.record_id"], name=op.f("fk_placement_version_unit")),
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_placement_version_write_number")
+        ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_placement_version_version")),
+        sa.CheckConstraint(
+            "version = 1 OR version_reason IS NOT NULL", name=op.f("ck_placement_version_version_reason")
         ),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_placement_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_placement_version_record_id_version")),
@@ -491,6 +517,8 @@ def _plate_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_plate_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_plate_version_version")),
+        sa.CheckConstraint("version = 1 OR version_reason IS NOT NULL", name=op.f("ck_plate_version_version_reason")),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_plate_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_plate_version_record_id_version")),
     )
@@ -533,6 +561,10 @@ def _position_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_position_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_position_version_version")),
+        sa.CheckConstraint(
+            "version = 1 OR version_reason IS NOT NULL", name=op.f("ck_position_version_version_reason")
+        ),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_position_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_position_version_record_id_version")),
     )
@@ -568,6 +600,10 @@ def _presence_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_presence_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_presence_version_version")),
+        sa.CheckConstraint(
+            "version = 1 OR version_reason IS NOT NULL", name=op.f("ck_presence_version_version_reason")
+        ),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_presence_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_presence_version_record_id_version")),
     )
@@ -598,6 +634,8 @@ def _printer_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_printer_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_printer_version_version")),
+        sa.CheckConstraint("version = 1 OR version_reason IS NOT NULL", name=op.f("ck_printer_version_version_reason")),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_printer_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_printer_version_record_id_version")),
     )
@@ -635,6 +673,10 @@ def _purchase_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_purchase_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_purchase_version_version")),
+        sa.CheckConstraint(
+            "version = 1 OR version_reason IS NOT NULL", name=op.f("ck_purchase_version_version_reason")
+        ),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_purchase_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_purchase_version_record_id_version")),
     )
@@ -669,6 +711,8 @@ def _release_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_release_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_release_version_version")),
+        sa.CheckConstraint("version = 1 OR version_reason IS NOT NULL", name=op.f("ck_release_version_version_reason")),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_release_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_release_version_record_id_version")),
     )
@@ -709,6 +753,8 @@ def _removal_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_removal_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_removal_version_version")),
+        sa.CheckConstraint("version = 1 OR version_reason IS NOT NULL", name=op.f("ck_removal_version_version_reason")),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_removal_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_removal_version_record_id_version")),
     )
@@ -739,6 +785,10 @@ def _revision_version() -> None:
         sa.ForeignKeyConstraint(["record_id"], ["record_index.record_id"], name=op.f("fk_revision_version_record_id")),
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_revision_version_write_number")
+        ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_revision_version_version")),
+        sa.CheckConstraint(
+            "version = 1 OR version_reason IS NOT NULL", name=op.f("ck_revision_version_version_reason")
         ),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_revision_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_revision_version_record_id_version")),
@@ -772,6 +822,8 @@ def _robot_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_robot_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_robot_version_version")),
+        sa.CheckConstraint("version = 1 OR version_reason IS NOT NULL", name=op.f("ck_robot_version_version_reason")),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_robot_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_robot_version_record_id_version")),
     )
@@ -816,6 +868,10 @@ def _session_use_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_session_use_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_session_use_version_version")),
+        sa.CheckConstraint(
+            "version = 1 OR version_reason IS NOT NULL", name=op.f("ck_session_use_version_version_reason")
+        ),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_session_use_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_session_use_version_record_id_version")),
     )
@@ -858,6 +914,8 @@ def _session_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_session_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_session_version_version")),
+        sa.CheckConstraint("version = 1 OR version_reason IS NOT NULL", name=op.f("ck_session_version_version_reason")),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_session_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_session_version_record_id_version")),
     )
@@ -886,6 +944,10 @@ def _settings_version() -> None:
         sa.ForeignKeyConstraint(["record_id"], ["record_index.record_id"], name=op.f("fk_settings_version_record_id")),
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_settings_version_write_number")
+        ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_settings_version_version")),
+        sa.CheckConstraint(
+            "version = 1 OR version_reason IS NOT NULL", name=op.f("ck_settings_version_version_reason")
         ),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_settings_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_settings_version_record_id_version")),
@@ -924,6 +986,8 @@ def _slot_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_slot_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_slot_version_version")),
+        sa.CheckConstraint("version = 1 OR version_reason IS NOT NULL", name=op.f("ck_slot_version_version_reason")),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_slot_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_slot_version_record_id_version")),
     )
@@ -954,6 +1018,8 @@ def _spool_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_spool_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_spool_version_version")),
+        sa.CheckConstraint("version = 1 OR version_reason IS NOT NULL", name=op.f("ck_spool_version_version_reason")),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_spool_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_spool_version_record_id_version")),
     )
@@ -994,6 +1060,10 @@ def _stock_move_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_stock_move_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_stock_move_version_version")),
+        sa.CheckConstraint(
+            "version = 1 OR version_reason IS NOT NULL", name=op.f("ck_stock_move_version_version_reason")
+        ),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_stock_move_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_stock_move_version_record_id_version")),
     )
@@ -1027,6 +1097,10 @@ def _unit_design_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_unit_design_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_unit_design_version_version")),
+        sa.CheckConstraint(
+            "version = 1 OR version_reason IS NOT NULL", name=op.f("ck_unit_design_version_version_reason")
+        ),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_unit_design_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_unit_design_version_record_id_version")),
     )
@@ -1054,6 +1128,8 @@ def _unit_version() -> None:
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_unit_version_write_number")
         ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_unit_version_version")),
+        sa.CheckConstraint("version = 1 OR version_reason IS NOT NULL", name=op.f("ck_unit_version_version_reason")),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_unit_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_unit_version_record_id_version")),
     )
@@ -1088,6 +1164,10 @@ def _usage_plan_version() -> None:
         sa.ForeignKeyConstraint(["robot"], ["record_index.record_id"], name=op.f("fk_usage_plan_version_robot")),
         sa.ForeignKeyConstraint(
             ["write_number"], ["book_write.write_number"], name=op.f("fk_usage_plan_version_write_number")
+        ),
+        sa.CheckConstraint("version >= 1", name=op.f("ck_usage_plan_version_version")),
+        sa.CheckConstraint(
+            "version = 1 OR version_reason IS NOT NULL", name=op.f("ck_usage_plan_version_version_reason")
         ),
         sa.PrimaryKeyConstraint("row_number", name=op.f("pk_usage_plan_version")),
         sa.UniqueConstraint("record_id", "version", name=op.f("uq_usage_plan_version_record_id_version")),
