@@ -1,0 +1,1 @@
+"""Thin Streamlit pages over fleet."""
