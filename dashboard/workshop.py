@@ -8,6 +8,7 @@ from datetime import date, datetime, time, timedelta, tzinfo
 from typing import Literal
 
 from fleet.pipeline import ReadOut
+from fleet.plans.plate_list import expected_end
 from fleet.plans.plates import Plate as PlannedPlate
 from fleet.records.ledger import Plate
 from fleet.records.set_up import Lot, PartType, Presence, Printer, Spool
@@ -70,9 +71,7 @@ def _printing(found: ReadOut) -> Iterator[Run]:
         if plate.good is not None:
             continue
         part = history.one(PartType, history.one(Lot, plate.lot).part_type)
-        minutes = (part.plate_minutes or 0) + plate.started * (part.print_minutes or 0)
-        printer = history.one(Printer, plate.printer).code
-        end = plate.happened_at + timedelta(minutes=minutes)
+        printer, end = history.one(Printer, plate.printer).code, expected_end(history, plate)
         yield Run(printer, plate.code, f"{plate.started} x {part.label}", plate.happened_at, end, None, "printing")
 
 

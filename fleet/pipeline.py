@@ -102,7 +102,7 @@ def look_back(now: History, months: Sequence[History]) -> tuple[MonthForecast, .
         What was known at each month's start, oldest first; each month ends where the next starts, the last one now.
     """
     ages_now = ages_of(now)
-    ends = [*(later.as_of for later in months[1:]), now.as_of]
+    ends = [later.as_of for later in (*months, now)][1:]
     found: list[MonthForecast] = []
     for then, end in zip(months, ends, strict=True):
         ages = ages_of(then)

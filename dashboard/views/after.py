@@ -45,7 +45,7 @@ from fleet.records.history import History
 from fleet.records.lookup import find_robot
 from fleet.records.set_up import Robot
 from fleet.report.wording import NO_BREAK, plain
-from fleet.store.entries import log_session
+from fleet.store.entries import log_session, receipt_of
 
 _SUGGESTED = 5
 _HOURS = ("0.5", "1", "1.5", "2", "3")
@@ -95,7 +95,11 @@ def _named(robot: Robot) -> Html:
 def _saved(draft: str) -> int | None:
     """The write in which this draft was saved, as this visit or the address knows."""
     said = str(st.session_state.get(saved_key(draft)) or chosen("saved") or "")
-    return int(said) if said.isdecimal() and len(said) < 10 else None
+    if said.isdecimal() and len(said) < 10:
+        return int(said)
+    # The answer to a press of Save may have been lost on its way: the book knows.
+    kept = receipt_of(answers.book(), draft)
+    return None if kept is None else kept.write_number
 
 
 def _draft_of(robot: Robot) -> str:

@@ -11,7 +11,10 @@ from dashboard.marks import caution, element
 from fleet.errors import FleetError
 from fleet.forecasts.next_session import Held, JointOutlook, RobotOutlook
 from fleet.pipeline import ReadOut
-from fleet.store.entries import CheckEntry, lift_hold, log_check
+from fleet.plans.stock import stock_by_lot
+from fleet.records.set_up import Slot
+from fleet.report.wording import plain
+from fleet.store.entries import CheckEntry, SpareEntry, lift_hold, log_check, log_spare
 
 _LABELS = {"good": "looks good", "doubtful": "doubtful"}
 _SAID = "said at the bench"
@@ -28,7 +31,43 @@ def draw_bench(found: ReadOut, robot: RobotOutlook, joint: JointOutlook) -> None
         label = "Save check: good" if verdict == "good" else "Save check: doubtful, and hold this joint"
         st.button(label, key=f"check {name}", on_click=_check, args=(joint.position, name), type="primary")
     if joint.held is not None:
+        _draw_spare(found, joint, joint.held, name)
         draw_lift(joint.held)
+
+
+def _draw_spare(found: ReadOut, joint: JointOutlook, held: Held, name: str) -> None:
+    """Where a failed part still sits: the spare that ends it, from the lots that have some left."""
+    if held.slot is None or held.place is None:
+        return
+    part_type = found.history.one(Slot, held.slot).part_type
+    lots = {lot.lot: lot for lot in stock_by_lot(found.history) if lot.part_type == part_type and lot.on_hand > 0}
+    if not lots:
+        show(element("p", "No spare of this part is on the shelf.", class_="soft"))
+        return
+    key = f"spare {name}"
+    chosen = st.pills(
+        "Spare put in",
+        list(lots),
+        format_func=lambda lot: f"{plain(lots[lot].code)} ({lots[lot].on_hand} left)",
+        key=key,
+    )
+    if chosen is not None:
+        label = f"Save: spare from {plain(lots[chosen].code)} put in"
+        st.button(label, key=f"save {key}", on_click=_put_in, args=(joint.position, held, key), type="primary")
+
+
+def _put_in(position: str, held: Held, key: str) -> None:
+    """Write the spare that is chosen at this press; a second press finds none chosen."""
+    lot = st.session_state.pop(key, None)
+    if lot is None or held.slot is None or held.place is None:
+        return
+    spare = SpareEntry(position, held.slot, lot, held.place)
+    try:
+        receipt = log_spare(answers.book(), spare, None, answers.now(), "dashboard")
+    except FleetError as problem:
+        st.session_state[_SAID] = (str(problem), False)
+        return
+    st.session_state[_SAID] = (f"Saved: {receipt.sentence}", True)
 
 
 def draw_lift(held: Held) -> None:

@@ -11,8 +11,8 @@ from dashboard import answers
 from dashboard.charts import score_chart
 from dashboard.frame import empty_book, ground_now, lead, title
 from dashboard.links import chosen, show, show_linked
-from dashboard.marks import Html, address, element, facts, folded, html, joined_html, link, table
-from fleet.forecasts.past_months import MonthForecast, misses, verdict
+from dashboard.marks import Html, address, element, facts, folded, joined_html, link, table
+from fleet.forecasts.past_months import MonthForecast, coverage, misses, verdict
 from fleet.forecasts.planned_use import robots_in_service
 from fleet.records.history import History
 from fleet.records.set_up import PartType
@@ -33,8 +33,11 @@ def draw() -> None:
         lead("No full month has been logged yet. After the first one, this page compares each forecast with what came.")
         return
     judged = verdict([(forecast.distribution, forecast.seen) for forecast in forecasts])
-    inside = sum(forecast.low <= forecast.seen <= forecast.high for forecast in forecasts)
-    lead(f"{judged.sentence} Of {len(forecasts)} monthly counts, {inside} fell in the range meant for 8 in 10 or more.")
+    held = coverage(forecasts)
+    lead(
+        f"{judged.sentence} Of {held.forecasts} monthly counts, {held.inside} fell in the range forecast for them "
+        f"(expect {held.low}–{held.high})."
+    )
     show(
         element(
             "p",
@@ -104,9 +107,16 @@ def _parts(by_part: dict[str, list[MonthForecast]]) -> Html:
     rows = []
     for code, held in sorted(by_part.items(), key=lambda item: item[1][0].label):
         expected = sum(forecast.expected for forecast in held)
-        inside = sum(forecast.low <= forecast.seen <= forecast.high for forecast in held)
+        in_range = coverage(held)
         name = link(held[0].label, address("score", part=code))
         seen = sum(forecast.seen for forecast in held)
-        rows.append([name, figure(expected, 2), str(seen), html(f"{inside} of {len(held)}")])
+        rows.append(
+            [
+                name,
+                figure(expected, 2),
+                str(seen),
+                f"{in_range.inside} of {in_range.forecasts} (expect {figure(in_range.expected, 2)})",
+            ]
+        )
     head = ["Part", "Expected", "Seen", "Months in range"]
     return joined_html([element("h2", "By part"), table(head, rows, "All these months together.", stack=True)])

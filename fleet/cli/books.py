@@ -99,6 +99,8 @@ def _imported(report: ImportReport, dry_run: bool) -> str:
         if report.zone_assumed_for
         else ""
     )
+    if not said:
+        return "No problems; the files hold no rows."
     if dry_run:
         return f"No problems; nothing written. It would add: {said}.{zone}"
     return f"Imported as write {report.write_number}: {said}.{zone}"

@@ -7,11 +7,11 @@ from typing import TYPE_CHECKING, Literal
 
 import click
 
-from fleet.cli.options import Number, book_option, by_option, now, opened, parse_time
+from fleet.cli.options import LAST_WRITE, Number, book_option, by_option, now, opened, parse_time
 
 if TYPE_CHECKING:
     from fleet.records.history import History
-    from fleet.records.set_up import Position, Robot
+    from fleet.records.set_up import Position, Robot, Slot
     from fleet.store.entries import Receipt
 
 HOURS = Number("hours", 0, 744)
@@ -58,7 +58,7 @@ def log_session_command(
 
     with opened(where) as book:
         history = read_history(book, now())
-        ended_at = None if written_at is None else parse_time("--ended", written_at, history)
+        ended_at = _now_at_home(history) if written_at is None else parse_time("--ended", written_at, history)
         entry = SessionEntry(
             robot=find_robot(history, robot).record_id,
             hours=hours,
@@ -123,6 +123,48 @@ def log_swap_command(
     _log_part(where, entered_by, (robot, joint, part), place, "replaced while good", None, spare, written_at)
 
 
+@log_command.command("spare")
+@click.argument("robot")
+@click.argument("joint")
+@click.argument("part")
+@click.option("--spare", metavar="LOT", required=True, help="Lot of the spare that was put in.")
+@place_option
+@at_option
+@book_option
+@by_option
+def log_spare_command(
+    robot: str,
+    joint: str,
+    part: str,
+    spare: str,
+    place: int | None,
+    written_at: str | None,
+    where: str | None,
+    entered_by: str,
+) -> None:
+    """A spare was put in for PART of JOINT of ROBOT, which had failed earlier or was missing."""
+    from fleet.records.lookup import find_lot, find_position, find_robot, find_slot
+    from fleet.store.entries import SpareEntry, log_spare
+    from fleet.store.reading import read_history
+
+    with opened(where) as book:
+        history = read_history(book, now())
+        position = find_position(history, find_robot(history, robot), joint)
+        slot = find_slot(history, position, part)
+        lot = find_lot(history, slot.part_type, spare).record_id
+        moment = None if written_at is None else parse_time("--at", written_at, history)
+        entry = SpareEntry(position.record_id, slot.record_id, lot, _place_in(slot, place))
+        _say(log_spare(book, entry, moment, now(), entered_by))
+
+
+def _place_in(slot: Slot, place: int | None) -> int:
+    from fleet.errors import RecordError
+
+    if slot.count > 1 and place is None:
+        raise RecordError(f"{slot.code} holds {slot.count} like parts: say which with --place 1 to {slot.count}.")
+    return place or 1
+
+
 def _log_part(
     where: str | None,
     entered_by: str,
@@ -145,15 +187,13 @@ def _log_part(
         robot = find_robot(history, what[0])
         position = find_position(history, robot, what[1])
         slot = find_slot(history, position, what[2])
-        if slot.count > 1 and place is None:
-            raise RecordError(f"{slot.code} holds {slot.count} like parts: say which with --place 1 to {slot.count}.")
         if cause not in CAUSES:
             raise RecordError(f"--cause {cause!r} is not one of: {', '.join(CAUSES)}.")
         part = PartEntry(
             position=position.record_id,
             slot=slot.record_id,
             happened=happened,
-            place=place or 1,
+            place=_place_in(slot, place),
             mode=None if mode is None else find_mode(history, slot.part_type, mode).record_id,
             lot=None if spare is None else find_lot(history, slot.part_type, spare).record_id,
             cause=cause,
@@ -161,14 +201,19 @@ def _log_part(
         _say(log_part(book, part, _when(history, robot, written_at), now(), entered_by))
 
 
-def _when(history: History, robot: Robot, written_at: str | None) -> datetime | None:
+def _now_at_home(history: History) -> datetime:
+    """This moment on the book's own clock, so that messages read as people there would say them."""
+    return now().astimezone(history.zone)
+
+
+def _when(history: History, robot: Robot, written_at: str | None) -> datetime:
     """As written; else the end of the robot's session of this evening; else now."""
     from fleet.records.ledger import Session
 
     if written_at is not None:
         return parse_time("--at", written_at, history)
     ended = [session.ended_at for session in history.of(Session).values() if session.robot == robot.record_id]
-    return ended[-1] if ended and now() - ended[-1] < SAME_EVENING else None
+    return ended[-1] if ended and now() - ended[-1] < SAME_EVENING else _now_at_home(history)
 
 
 @log_command.command("check")
@@ -206,12 +251,12 @@ def log_check_command(
             raise RecordError("--mode needs --part beside it.")
         found = None if mode is None or slot is None else find_mode(history, slot.part_type, mode).record_id
         entry = CheckEntry(position.record_id, None if slot is None else slot.record_id, found, good, note)
-        moment = None if written_at is None else parse_time("--at", written_at, history)
+        moment = _now_at_home(history) if written_at is None else parse_time("--at", written_at, history)
         _say(log_check(book, entry, moment, now(), entered_by))
 
 
 @log_command.command("undo")
-@click.argument("write", type=click.IntRange(1))
+@click.argument("write", type=click.IntRange(1, LAST_WRITE))
 @click.option("--reason", default="undone", show_default=True, help="Why; it stays in the book.")
 @book_option
 @by_option

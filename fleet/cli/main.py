@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import errno
 import importlib
+import io
 import sys
 from collections.abc import Sequence
 from typing import NoReturn
@@ -64,6 +66,8 @@ def wearbook() -> None:
 
 def main(arguments: Sequence[str] | None = None) -> None:
     """Run the command line; what the user can mend is one sentence on standard error, and exit code 2."""
+    if isinstance(sys.stdout, io.TextIOWrapper):
+        sys.stdout.reconfigure(errors="replace")  # a terminal that cannot show a sign shows a question mark
     try:
         wearbook.main(None if arguments is None else list(arguments), prog_name="wearbook", standalone_mode=False)
     except click.exceptions.NoArgsIsHelpError as asked:
@@ -71,13 +75,18 @@ def main(arguments: Sequence[str] | None = None) -> None:
         sys.exit(2)
     except click.UsageError as error:
         path = error.ctx.command_path if error.ctx is not None else "wearbook"
-        _refuse(f"{error.format_message().rstrip('.')}. ('{path} --help' shows how.)")
+        said = error.format_message().rstrip(".")
+        _refuse(f"{said}{'' if said.endswith('?') else '.'} ('{path} --help' shows how.)")
     except click.ClickException as error:
         _refuse(error.format_message())
     except click.Abort:
         _refuse("stopped.")
     except FleetError as error:
         _refuse(str(error))
+    except OSError as error:
+        if error.errno != errno.ENOSPC:
+            raise
+        _refuse("the answer cannot be written: the disk is full.")
 
 
 def _refuse(sentence: str) -> NoReturn:

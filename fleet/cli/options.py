@@ -7,7 +7,7 @@ import math
 import os
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager
-from datetime import UTC, datetime
+from datetime import UTC, datetime, timedelta
 from typing import TYPE_CHECKING, Any
 
 import click
@@ -20,6 +20,7 @@ if TYPE_CHECKING:
 
 BOOK_VARIABLE = "WEARBOOK_BOOK"
 DEFAULT_BOOK = "wearbook.db"
+LAST_WRITE = 2**63 - 1  # the largest number that a database column holds
 
 book_option = click.option(
     "--book", "where", metavar="PATH", help="The book: a file, or a database URL. [WEARBOOK_BOOK, else ./wearbook.db]"
@@ -31,7 +32,6 @@ as_of_option = click.option(
 known_by_option = click.option(
     "--known-by", metavar="TIME|WRITE", help="Use only what was entered by this time, or by this write number."
 )
-by_option = click.option("--by", "entered_by", default="bench", show_default=True, help="Role of who enters this.")
 
 
 def book_of(where: str | None) -> str:
@@ -66,39 +66,72 @@ def history_of_book(book: Book, as_of: str | None, known_by: str | None) -> Hist
     moment = now() if as_of is None else parse_time("--as-of", as_of, today)
     known: int | datetime | None = None
     if known_by is not None:
-        known = int(known_by) if known_by.isdecimal() else parse_time("--known-by", known_by, today)
+        known = _write_number(known_by) if known_by.isdecimal() else parse_time("--known-by", known_by, today)
     return read_history(book, moment, known)
 
 
+def _write_number(written: str) -> int:
+    """A write number; one beyond all that a book can hold stands for its last."""
+    return min(int(written), LAST_WRITE) if len(written) < 20 else LAST_WRITE
+
+
 def parse_time(option: str, written: str, history: History) -> datetime:
-    """A time as people write it, in the book's home zone unless it states its offset."""
+    """A time as people write it, in the book's home zone unless it states its offset.
+
+    A date alone stands for the end of that day, or for now if the day is not over.
+    """
     from fleet.errors import RecordError
+    from fleet.records.fields import EARLIEST, LATEST
     from fleet.store.csv_cells import parse_moment
 
     try:
         start, end = parse_moment(written.strip(), history.zone)
     except RecordError as error:
         raise RecordError(f"{option} {error}.") from None
-    return start if end is None else end
+    if not EARLIEST <= start < LATEST:
+        raise RecordError(f"{option} is {written!r}, outside the years 1990 to 2150.")
+    if end is None:
+        return start
+    today = now().astimezone(end.tzinfo)
+    return today if start <= today < end else end - timedelta(seconds=1)
 
 
 class Number(click.ParamType[float]):
-    """A plain finite number within bounds; says in one sentence what is wrong."""
+    """A plain finite number within bounds; `name` says of what, in words that fit behind "write" and "give"."""
 
-    def __init__(self, unit: str, low: float, high: float) -> None:
-        self.name = unit
-        self.low, self.high = low, high
+    def __init__(self, name: str, low: float, high: float, example: str = "1.5") -> None:
+        self.name = name
+        self.low, self.high, self.example = low, high, example
 
     def convert(self, value: Any, param: click.Parameter | None, ctx: click.Context | None) -> float:
         try:
             number = float(value)
         except (TypeError, ValueError):
-            self.fail(f"{value!r} is not a plain number of {self.name}: write it such as 1.5.", param, ctx)
-        if not math.isfinite(number):
-            self.fail(f"{value!r} is not a finite number of {self.name}.", param, ctx)
+            number = math.nan
+        if not math.isfinite(number) or "_" in str(value):
+            self.fail(f"{value!r} is not a plain number: write {self.name} such as {self.example}.", param, ctx)
         if not self.low <= number <= self.high:
-            self.fail(f"{number:g} {self.name} cannot be: give from {self.low:g} to {self.high:g}.", param, ctx)
+            self.fail(f"{number:g} cannot be: give {self.name} from {self.low:g} to {self.high:g}.", param, ctx)
         return number
+
+
+class Role(click.ParamType[str]):
+    """Who enters something, as short as a book can keep it."""
+
+    name = "role"
+
+    def convert(self, value: Any, param: click.Parameter | None, ctx: click.Context | None) -> str:
+        from fleet.records.fields import FieldSpec, field_problem
+
+        problem = field_problem(FieldSpec("code", "who enters it", optional=False), value)
+        if problem is not None:
+            self.fail(f"it {problem}.", param, ctx)
+        return str(value)
+
+
+by_option = click.option(
+    "--by", "entered_by", default="bench", show_default=True, type=Role(), help="Role of who enters this."
+)
 
 
 def show(as_json: bool, document: Callable[[], dict[str, Any]], table: Callable[[], RenderableType]) -> None:

@@ -22,7 +22,7 @@ if TYPE_CHECKING:
     from fleet.pipeline import ReadOut
 
 HOURS = Number("hours", 0.01, 744)
-TARGET = Number("chance", 0.5, 0.9999)
+TARGET = Number("a chance", 0.5, 0.9999, "0.9")
 weeks_option = click.option("--weeks", default=8, show_default=True, type=click.IntRange(1, 52), help="Weeks ahead.")
 target_option = click.option(
     "--target", default=0.9, show_default=True, type=TARGET, help="Chance with which the stock should last."
@@ -150,7 +150,8 @@ def ages_command(
     impacts, days}, record.
     """
     from fleet.lives.ages import ages_of
-    from fleet.records.lookup import find_robot
+    from fleet.records.lookup import find_part_type, find_robot
+    from fleet.records.set_up import Slot
     from fleet.report.documents import ages_document
     from fleet.report.tables import ages_table
 
@@ -158,5 +159,7 @@ def ages_command(
         history = history_of_book(book, as_of, known_by)
     if robot is not None:
         find_robot(history, robot)
+    if part is not None and not any(slot.code == part for slot in history.of(Slot).values()):
+        find_part_type(history, part)
     document = ages_document(history, ages_of(history), robot, part)
     show(as_json, lambda: document, lambda: ages_table(document))

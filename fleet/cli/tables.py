@@ -14,9 +14,9 @@ if TYPE_CHECKING:
 
     from fleet.lives.life_data import LifeData
 
-AGE = Number("clock units", 1e-9, 1e13)
-FACTOR = Number("times", 1.01, 1000)
-LEVEL = Number("confidence", 0.01, 0.9999)
+AGE = Number("an age", 1e-9, 1e13, "120")
+FACTOR = Number("a factor", 1.01, 1000, "3")
+LEVEL = Number("a confidence", 0.01, 0.9999, "0.95")
 
 
 @click.command("fit")
@@ -30,7 +30,7 @@ LEVEL = Number("confidence", 0.01, 0.9999)
     "shape_median",
     default=2.0,
     show_default=True,
-    type=Number("shape", 0.1, 50),
+    type=Number("a shape", 0.1, 50, "2"),
     help="Belief: middle value of the shape.",
 )
 @click.option("--shape-factor", default=2.0, show_default=True, type=FACTOR, help="Belief: give or take what factor?")

@@ -115,8 +115,8 @@ class WeibullPosterior:
 
     @property
     def mostly_assumption(self) -> bool:
-        """Whether the belief weighs more than the data."""
-        return self.data_share < 0.5
+        """Whether the belief weighs more than the data, or nothing has failed: then only a lower end is known."""
+        return self.failures == 0 or self.data_share < 0.5
 
     def b_life_quantile(self, percent: float, q: float) -> float:
         """Posterior quantile q of the age by which `percent` % have failed.

@@ -151,8 +151,9 @@ class LifeDraws:
 def draw_life(modes: Sequence[tuple[str, str, WeibullPosterior]], n_draws: int, rng: np.random.Generator) -> LifeDraws:
     """Joint draws from the posteriors of a part's modes, which are independent of one another.
 
-    Each posterior's nodes are resampled systematically (one random start, even steps through the weights), then
-    permuted mode by mode.
+    The cells of each posterior's fine grid are resampled systematically (one random start, even steps through the
+    weights), then permuted mode by mode. Quantiles of the draws are then as good as their number; the few nodes that
+    serve expectations stand in columns too far apart for that.
 
     Parameters
     ----------
@@ -177,9 +178,11 @@ def draw_life(modes: Sequence[tuple[str, str, WeibullPosterior]], n_draws: int, 
     drawn = []
     for mode, clock, posterior in modes:
         level = (np.arange(n_draws) + rng.random()) / n_draws
-        node = np.searchsorted(np.cumsum(posterior.weight), level, side="right")
-        node = rng.permutation(np.minimum(node, posterior.weight.size - 1))
-        drawn.append(ModeDraws(mode, clock, posterior.shape[node], posterior.scale[node]))
+        cell = np.searchsorted(np.cumsum(posterior.fine_weight), level, side="right")
+        cell = rng.permutation(np.minimum(cell, posterior.fine_weight.size - 1))
+        line, column = np.unravel_index(cell, posterior.fine_weight.shape)
+        log_scale = np.clip(posterior.log_scale[line, column], -_LARGEST_EXPONENT, _LARGEST_EXPONENT)
+        drawn.append(ModeDraws(mode, clock, np.exp(posterior.log_shape[line]), np.exp(log_scale)))
     return LifeDraws(tuple(drawn))
 
 

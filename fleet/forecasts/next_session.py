@@ -23,11 +23,16 @@ DUE_ABOVE = 0.10
 
 @dataclass(frozen=True)
 class Held:
-    """Why something must not run; `hold` is the record to release, None where a failed part waits for replacement."""
+    """Why something must not run; `hold` is the record to release, None where a part waits for its spare.
+
+    `slot` and `place` say where a spare would end it.
+    """
 
     why: str
     record_id: str
     hold: str | None
+    slot: str | None = None
+    place: int | None = None
 
 
 @dataclass(frozen=True)
@@ -110,7 +115,8 @@ def next_session(
     held = _held(history, slots)
     named = {key.name: life for key, life in draws.items()}
     odds = session_odds(at_risk, named)
-    running = [slot for slot in at_risk if not _robot_held(held, history, slot.robot)]
+    held_robots = {slot.position.robot for slot in slots if slot.position.robot in held or slot.unit in held}
+    running = [slot for slot in at_risk if slot.robot not in held_robots]
     fleet = session_odds(running, named).fleet if running else None
     by_robot: dict[str, list[SlotNow]] = defaultdict(list)
     for slot in slots:
@@ -151,7 +157,7 @@ def _held(history: History, slots: Sequence[SlotNow]) -> dict[str, Held]:
             assert span.failure is not None
             when = span.failure.happened_at.astimezone(history.zone)
             why = f"{label} failed {when:%Y-%m-%d} and is not replaced yet"
-            held[slot.unit] = Held(why, span.failure.record_id, None)
+            held[slot.unit] = Held(why, span.failure.record_id, None, slot.slot.record_id, span.places[0])
         if slot.empty_places and not slot.failed:
             why = f"{label}: {slot.empty_places} of {slot.slot.count} missing"
             held[slot.unit] = Held(why, slot.slot.record_id, None)
@@ -159,10 +165,6 @@ def _held(history: History, slots: Sequence[SlotNow]) -> dict[str, Held]:
         if hold.record_id not in lifted:
             held[hold.robot or hold.unit or ""] = Held(hold.why, hold.record_id, hold.record_id)
     return held
-
-
-def _robot_held(held: Mapping[str, Held], history: History, robot: str) -> bool:
-    return robot in held
 
 
 def _robot_outlook(

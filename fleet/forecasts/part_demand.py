@@ -17,6 +17,7 @@ from fleet.forecasts.parts_now import SlotNow
 from fleet.forecasts.planned_use import RobotPlan, joint_use
 from fleet.lives.ages import Ages
 from fleet.lives.part_data import LifeKey
+from fleet.records.fields import EARLIEST
 from fleet.records.history import History
 from fleet.records.set_up import PartType, Revision
 
@@ -40,8 +41,9 @@ class PartDemand:
     """Demand for one part type.
 
     `until_restocked` is the distribution of the demand over lead time and review, shape (n,); `by_week` holds one
-    distribution a row, counted from now, shape (n_weeks, n). `waiting` parts have failed and wait for theirs already;
-    they are in all of these. `fitted` parts run now, `use_hours` is the mean planned use of one over the weeks.
+    distribution a row, counted from now, shape (n_weeks, n). `waiting` places hold a failed part or none and wait for
+    theirs already; they are in all of these. `fitted` parts run now, `use_hours` is the mean planned use of one over
+    the weeks.
     """
 
     part_type: str
@@ -84,9 +86,15 @@ def part_demands(
 
 def renewed_by(history: History, key: LifeKey, draws: Mapping[LifeKey, LifeDraws]) -> LifeKey:
     """The life of the part that will be put in: the newest revision that is still made, not a lot kept apart."""
-    made = [r.record_id for r in history.of(Revision).values() if r.part_type == key.part_type and not r.superseded]
-    fresh = LifeKey(key.part_type, made[-1] if made else key.revision)
+    newest = newest_made(history, key.part_type)
+    fresh = LifeKey(key.part_type, key.revision if newest is None else newest.record_id)
     return fresh if fresh in draws else LifeKey(key.part_type, key.revision) if key.apart_lot else key
+
+
+def newest_made(history: History, part_type: str) -> Revision | None:
+    """The newest revision of a part type that is still made; of those that hold from one date, the last by its code."""
+    made = [r for r in history.of(Revision).values() if r.part_type == part_type and not r.superseded]
+    return max(made, key=lambda revision: (revision.valid_from or EARLIEST, revision.code), default=None)
 
 
 def _demand(
@@ -103,7 +111,7 @@ def _demand(
     horizon = max(n_weeks * DAYS_A_WEEK, days)
     shares = [DAYS_A_WEEK * week / horizon for week in range(1, n_weeks + 1)] + [days / horizon]
     parts = [part for slot in slots for part in _parts(ages, slot, plans, horizon / DAYS_A_WEEK, draws)]
-    waiting = sum(span.count for slot in slots for span in slot.failed)
+    waiting = sum(slot.empty_places + sum(span.count for span in slot.failed) for slot in slots)
     used = {part.life for part in parts} | {renewals[part.life] for part in parts}
     failures = (
         fleet_demand(

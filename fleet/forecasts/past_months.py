@@ -31,7 +31,8 @@ CONTESTED_BEYOND = 3.0
 class MonthForecast:
     """Failures of one part type forecast for one month with what was known at its start, and those that were seen.
 
-    `distribution` has shape (n,); the forecast is made for the use that really happened.
+    `distribution` has shape (n,); the forecast is made for the use that really happened. `mass` is the chance that
+    the forecast gave to its own range, `low` and `high` included: for small counts well above 8 in 10.
     """
 
     start: datetime
@@ -42,6 +43,7 @@ class MonthForecast:
     expected: float
     low: int
     high: int
+    mass: float
     seen: int
     records: tuple[str, ...]
 
@@ -92,22 +94,27 @@ def month_forecasts(
     found = []
     for part_type, held in parts.items():
         distribution = fleet_demand(held, named, [1.0], renewal_life=renewals)[0]
-        records = seen.get(part_type, ())
-        found.append(
-            MonthForecast(
-                start,
-                end,
-                part_type,
-                now.one(PartType, part_type).label,
-                distribution,
-                expected(distribution),
-                quantile(distribution, 0.1),
-                quantile(distribution, 0.9),
-                len(records),
-                tuple(records),
-            )
-        )
+        found.append(_forecast(now, (start, end), part_type, distribution, seen.get(part_type, ())))
     return tuple(found)
+
+
+def _forecast(
+    now: History, month: tuple[datetime, datetime], part_type: str, distribution: FloatArray, records: Sequence[str]
+) -> MonthForecast:
+    low, high = quantile(distribution, 0.1), quantile(distribution, 0.9)
+    return MonthForecast(
+        start=month[0],
+        end=month[1],
+        part_type=part_type,
+        label=now.one(PartType, part_type).label,
+        distribution=distribution,
+        expected=expected(distribution),
+        low=low,
+        high=high,
+        mass=float(distribution[low : high + 1].sum()),
+        seen=len(records),
+        records=tuple(records),
+    )
 
 
 def _real_use(ages: Ages, position: str, start: datetime, end: datetime) -> dict[str, float]:
@@ -157,6 +164,26 @@ def verdict(forecasts: Sequence[tuple[FloatArray, int]]) -> Verdict:
 def _mid_pit(distribution: FloatArray, seen: int) -> float:
     below = float(distribution[:seen].sum())
     return below + (0.5 * float(distribution[seen]) if seen < distribution.size else 0.0)
+
+
+@dataclass(frozen=True)
+class Coverage:
+    """How many counts fell in the range of their forecast, and how many should: `low` to `high`, 8 times in 10."""
+
+    forecasts: int
+    inside: int
+    expected: float
+    low: int
+    high: int
+
+
+def coverage(forecasts: Sequence[MonthForecast]) -> Coverage:
+    """Counts within their range beside the chance that the forecasts gave to their own ranges."""
+    inside = sum(forecast.low <= forecast.seen <= forecast.high for forecast in forecasts)
+    hits = np.ones(1)
+    for forecast in forecasts:
+        hits = np.convolve(hits, [1 - forecast.mass, forecast.mass])
+    return Coverage(len(forecasts), inside, expected(hits), quantile(hits, 0.1), quantile(hits, 0.9))
 
 
 def misses(forecasts: Sequence[MonthForecast], most: int) -> list[MonthForecast]:

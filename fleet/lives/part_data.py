@@ -45,13 +45,16 @@ class ModeData:
 class PartData:
     """All life data of one LifeKey.
 
-    `left_out` counts parts whose age nobody knows, `no_use` failures before any use; neither is in the tables.
-    `use` is the total use of all parts seen, by clock, from which one clock's rate against another follows.
+    `whole` is the part as a whole in running hours, by whatever mode it failed, a failure at the age at which it was
+    found: for the steps of a picture, while `modes` serve the fits. `left_out` counts parts whose age nobody knows,
+    `no_use` failures before any use; neither is in the tables. `use` is the total use of all parts seen, by clock, from
+    which one clock's rate against another follows.
     """
 
     key: LifeKey
     label: str
     modes: tuple[ModeData, ...]
+    whole: LifeData
     failures: int
     running: int
     suspended: int
@@ -102,6 +105,7 @@ def _part_data(history: History, ages: Ages, checks: _Checks, key: LifeKey, span
         modes=tuple(
             ModeData(mode, stop=_life_data(seen, mode, "stop"), unfit=_life_data(seen, mode, "unfit")) for mode in modes
         ),
+        whole=_whole_part(seen),
         failures=sum(row.span.count for row in failed),
         running=sum(span.count for span in spans if span.running),
         suspended=sum(row.span.count for row in seen) - sum(row.span.count for row in failed),
@@ -161,8 +165,8 @@ def _observe(history: History, ages: Ages, checks: _Checks, span: PartSpan, mode
 def _age_last_seen_good(ages: Ages, checks: _Checks, span: PartSpan, mode: PartMode) -> Age:
     """Age at which a part was last seen to be good in a mode that shows only when looked at.
 
-    A part taken out while good, to be replaced or moved, was in someone's hand. Where no check of the module was ever noted, people are taken
-    to look after every session.
+    A part taken out while good, to be replaced or moved, was in someone's hand. Where no check of the module was ever
+    noted, people are taken to look after every session.
     """
     in_hand = span.removal is not None and span.removal.reason in ("replaced while good", "moved")
     if (in_hand and span.failure is None) or not checks.ever(span.fitment):
@@ -227,6 +231,17 @@ def _life_data(seen: Sequence[_Observed], mode: PartMode, endpoint: Endpoint) ->
         mode=[mode.code if row[1] != float("inf") else None for row in rows],
         clock=clock,
         records=[row[4] for row in rows],
+    )
+
+
+def _whole_part(seen: Sequence[_Observed]) -> LifeData:
+    used = [row for row in seen if row.upper["hours"] > row.span.entry["hours"]]
+    ages = [row.upper["hours"] for row in used]
+    return LifeData(
+        ages,
+        [age if row.failure is not None else float("inf") for age, row in zip(ages, used, strict=True)],
+        [row.span.entry["hours"] for row in used],
+        [float(row.span.count) for row in used],
     )
 
 

@@ -6,12 +6,12 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from datetime import datetime, timedelta
 
-from fleet.forecasts.part_demand import DAYS_A_WEEK, PartDemand
+from fleet.forecasts.part_demand import DAYS_A_WEEK, PartDemand, newest_made
 from fleet.plans.plates import PlatePlan, PresenceWindow, PrinterNow, PrintNeed, SpoolNow, plan_plates
 from fleet.plans.spare_list import SpareNeed
 from fleet.records.history import History
 from fleet.records.ledger import Plate
-from fleet.records.set_up import Lot, PartType, Presence, Printer, Revision, Spool
+from fleet.records.set_up import Lot, PartType, Presence, Printer, Spool
 from fleet.records.vocabulary import WEEKDAYS
 
 
@@ -53,12 +53,12 @@ def _need(history: History, spare: SpareNeed) -> PrintNeed:
     part_type = history.one(PartType, spare.part_type)
     assert part_type.parts_per_plate is not None and part_type.print_minutes is not None
     assert part_type.plate_minutes is not None and part_type.nozzle_mm is not None and part_type.material is not None
-    made = [r.code for r in history.of(Revision).values() if r.part_type == spare.part_type and not r.superseded]
+    newest = newest_made(history, spare.part_type)
     good, started = _yield(history, spare.part_type)
     return PrintNeed(
         part=spare.code,
         label=spare.label,
-        revision=made[-1] if made else "",
+        revision="" if newest is None else newest.code,
         good_wanted=_wanted(spare),
         due=_due(history, spare),
         material=part_type.material,
@@ -94,14 +94,16 @@ def _yield(history: History, part_type: str) -> tuple[int, int]:
     return sum(plate.good or 0 for plate in plates), sum(plate.started for plate in plates)
 
 
+def expected_end(history: History, plate: Plate) -> datetime:
+    """When a plate that is on a printer should be done, by the minutes of its parts."""
+    part_type = history.one(PartType, history.one(Lot, plate.lot).part_type)
+    minutes = (part_type.plate_minutes or 0) + plate.started * (part_type.print_minutes or 0)
+    return plate.happened_at + timedelta(minutes=minutes)
+
+
 def _printers(history: History) -> list[PrinterNow]:
     """Each printer, free now unless a plate is still on it: then after its expected end."""
-    busy: dict[str, datetime] = {}
-    for plate in history.of(Plate).values():
-        if plate.good is None:
-            part_type = history.one(PartType, history.one(Lot, plate.lot).part_type)
-            minutes = (part_type.plate_minutes or 0) + plate.started * (part_type.print_minutes or 0)
-            busy[plate.printer] = plate.happened_at + timedelta(minutes=minutes)
+    busy = {p.printer: expected_end(history, p) for p in history.of(Plate).values() if p.good is None}
     return [
         PrinterNow(
             printer.code,

@@ -163,15 +163,22 @@ def plan_plates(
     PlanError
         If a figure cannot be; all problems at once.
     """
+    if not 0.0 < confidence < 1.0:
+        raise PlanError(f"The confidence is {confidence}: give a chance above 0 and below 1.")
     _check(needs, printers, spools, presence, now)
     shop = _Workshop(printers, spools, _Calendar(presence, now, ZoneInfo(zone)), now)
     shortages: list[str] = []
     for need in sorted(needs, key=lambda need: (need.due, need.part, need.revision)):
-        left = starts_for(need.good_wanted, confidence, need.good, need.started)
+        name = f"{need.label} ({need.revision})" if need.revision else need.label
+        try:
+            left = starts_for(need.good_wanted, confidence, need.good, need.started)
+        except PlanError as never_enough:  # of one part, which leaves the plates of the others as they are
+            shortages.append(f"{name}: {never_enough}")
+            continue
         while left > 0:
             problem = shop.add_plate(need, left)
             if problem is not None:
-                shortages.append(f"{need.label} ({need.revision}): {left} of its prints are not planned: {problem}")
+                shortages.append(f"{name}: {left} of its prints are not planned: {problem}")
                 break
             left -= shop.plates[-1].count
     ordered = sorted(shop.plates, key=lambda plate: (plate.start, plate.printer))

@@ -228,9 +228,7 @@ def _single_life(life: object, planned: float, failure: float) -> _Lives:
     while float(reliability(np.array([end]))[0]) >= _NOTHING:
         end *= 2.0
         if end > 1e30:
-            raise PlanError(
-                "The reliability never falls to 0, so there is no mean life: give a whole distribution."
-            )
+            raise PlanError("The reliability never falls to 0, so there is no mean life: give a whole distribution.")
     grid = np.linspace(0.0, end, _INTEGRAL_STEPS + 1)
     middle = np.asarray(reliability(0.5 * (grid[1:] + grid[:-1])), dtype=np.float64)
     at = np.asarray(reliability(grid), dtype=np.float64)

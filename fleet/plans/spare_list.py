@@ -83,6 +83,7 @@ def _need(
     coming = ordered.get(demand.part_type, 0)
     needed = stock_for(demand.until_restocked, target)
     own = [life for key, life in lives.items() if key.part_type == demand.part_type]
+    failures = sum(life.data.failures for life in own)
     stock = usable + coming
     short_weeks = [w + 1 for w, row in enumerate(demand.by_week) if chance_of_more_than(row, stock) > 1 - target]
     return SpareNeed(
@@ -104,8 +105,8 @@ def _need(
         days_until_restocked=demand.days_until_restocked,
         weeks=demand.weeks,
         short_from_week=short_weeks[0] if short_weeks else None,
-        failures_seen=sum(life.data.failures for life in own),
-        mostly_assumption=not own or _share(own) < 0.5,
+        failures_seen=failures,
+        mostly_assumption=failures == 0 or _share(own) < 0.5,
         lots=tuple(lot for lot in lots if lot.on_hand > 0),
     )
 

@@ -101,9 +101,7 @@ def starts_for_known_yield(good_wanted: int, confidence: float, chance: float) -
 
 def _check(good_wanted: int, confidence: float) -> None:
     if good_wanted < 0 or not 0.0 < confidence < 1.0:
-        raise PlanError(
-            f"{good_wanted} good ones with a chance of {confidence}: give 0 or more, a chance in (0, 1)."
-        )
+        raise PlanError(f"{good_wanted} good ones with a chance of {confidence}: give 0 or more, a chance in (0, 1).")
 
 
 def _first(chance: Callable[[int], float], good_wanted: int, confidence: float) -> int:

@@ -7,7 +7,7 @@ import math
 import unicodedata
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
-from datetime import UTC, datetime
+from datetime import UTC, datetime, timezone
 from typing import Any, Literal, TypeVar, dataclass_transform
 
 from fleet.errors import RecordError
@@ -188,6 +188,14 @@ def _moment_problem(_: FieldSpec, value: Any) -> str | None:
     return None
 
 
+def with_plain_offset(moment: datetime) -> datetime:
+    """The same moment with its offset as a plain number of hours: clocks of a zone subtract wrongly where they jump."""
+    offset = moment.utcoffset()
+    if offset is None or isinstance(moment.tzinfo, timezone):
+        return moment
+    return moment.astimezone(timezone(offset))
+
+
 def _flag_problem(_: FieldSpec, value: Any) -> str | None:
     return None if isinstance(value, bool) else f"is {value!r}, not yes or no"
 
@@ -228,12 +236,17 @@ class Record:
     stamp: Stamp | None = None
 
     def __post_init__(self) -> None:
+        fields = fields_of(type(self))
         problems = [
             f"{column_of(name, spec)} {problem}"
-            for name, spec in fields_of(type(self)).items()
+            for name, spec in fields.items()
             if (problem := field_problem(spec, getattr(self, name))) is not None
         ]
-        problems += self.contradictions()
+        if not problems:
+            for name, spec in fields.items():
+                if spec.kind == "moment" and getattr(self, name) is not None:
+                    object.__setattr__(self, name, with_plain_offset(getattr(self, name)))
+            problems = self.contradictions()
         if problems:
             raise RecordError(f"{kind_of(type(self)).replace('_', ' ')}: {'; '.join(problems)}.")
 

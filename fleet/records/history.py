@@ -59,10 +59,14 @@ class History:
 
     def with_records(self, records: Iterable[Record]) -> History:
         """The history as it would be with these records added (or put in the place of those with the same id)."""
-        rows = {kind: dict(held) for kind, held in self.rows.items()}
+        touched: dict[type[Record], dict[str, Record]] = {}
         for entry in records:
-            rows.setdefault(type(entry), {})[entry.record_id] = entry
-        return history_of((entry for held in rows.values() for entry in held.values()), self.as_of, self.write_number)
+            if type(entry) not in touched:
+                touched[type(entry)] = dict(self.of(type(entry)))
+            touched[type(entry)][entry.record_id] = entry
+        changed = history_of((entry for held in touched.values() for entry in held.values()), self.as_of)
+        rows = {**self.rows, **{kind: changed.of(kind) for kind in touched}}
+        return History(MappingProxyType(rows), self.as_of, self.write_number)
 
 
 def history_of(records: Iterable[Record], as_of: datetime, write_number: int = 0) -> History:

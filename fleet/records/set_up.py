@@ -113,6 +113,8 @@ class PartType(SetUpRecord):
             problems.append(
                 "a printed part needs material, print_minutes, plate_minutes, parts_per_plate and nozzle_mm"
             )
+        elif self.source == "printed" and not (self.mass_g > 0 and self.print_minutes):
+            problems.append("a printed part has mass_g and print_minutes above zero")
         return problems
 
 

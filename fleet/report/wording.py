@@ -59,7 +59,9 @@ def percent(share: float) -> str:
 
 
 def chance(value: Chance) -> str:
-    """`71 % (62-79)`, with a true dash."""
+    """`71 % (62-79)`, with a true dash; `under 1 %` alone where the whole range is."""
+    if max(value.mean, value.high) < 0.005:
+        return f"under 1{NO_BREAK}%"
     return f"{percent(value.mean)}{NO_BREAK}% ({_end(value.low)}–{_end(value.high)})"
 
 

@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 import re
-from datetime import UTC, date, datetime, time, timedelta, timezone, tzinfo
+from datetime import UTC, date, datetime, time, timedelta, tzinfo
 from decimal import Decimal, InvalidOperation
 from typing import Any
 
 from fleet.errors import RecordError
-from fleet.records.fields import FieldSpec, field_problem
+from fleet.records.fields import FieldSpec, field_problem, with_plain_offset
 
 _YES = {"yes": True, "no": False, "true": True, "false": False, "1": True, "0": False}
 _DAYTIME = re.compile(r"(\d{1,2}):(\d{2})")
@@ -83,7 +83,9 @@ def parse_moment(written: str, zone: tzinfo) -> tuple[datetime, datetime | None]
         if len(written) == 10:
             day = date.fromisoformat(written)
             start = datetime.combine(day, time.min, zone)
-            return _fixed(start), _fixed(datetime.combine(day + timedelta(days=1), time.min, zone))
+            return with_plain_offset(start), with_plain_offset(
+                datetime.combine(day + timedelta(days=1), time.min, zone)
+            )
         moment = datetime.fromisoformat(written)
         return (moment if moment.tzinfo is not None else _in_zone(moment, zone, written)), None
     except (ValueError, OverflowError):
@@ -101,10 +103,4 @@ def _in_zone(moment: datetime, zone: tzinfo, written: str) -> datetime:
         back = local.astimezone(UTC).astimezone(zone).replace(tzinfo=None)
         came = "twice" if back == moment else "never"
         raise RecordError(f"is {written!r}, a clock time that came {came} that night: write its offset too (+01:00)")
-    return _fixed(local)
-
-
-def _fixed(moment: datetime) -> datetime:
-    """The same moment with a plain offset, as it will be kept."""
-    offset = moment.utcoffset() or timedelta(0)
-    return moment.astimezone(timezone(offset))
+    return with_plain_offset(local)

@@ -8,13 +8,13 @@ from datetime import datetime, timedelta
 from typing import Literal
 
 from fleet.errors import RecordError
-from fleet.records.fields import Record
+from fleet.records.fields import Record, with_plain_offset
 from fleet.records.history import History
 from fleet.records.ledger import BenchCheck, Failure, Fitment, Hold, Release, Removal, Session
-from fleet.records.set_up import PartMode, PartType, Position, Robot, Slot
+from fleet.records.set_up import Lot, PartMode, PartType, Position, Robot, Slot
 from fleet.records.whereabouts import FittedPart, Whereabouts, whereabouts_of
 from fleet.store.book import Book
-from fleet.store.writing import Entry, Writer, new_record_id, records_of_write, write
+from fleet.store.writing import Entry, Writer, new_record_id, records_of_write, write, written_before
 
 Happened = Literal["failed", "found worn", "replaced while good"]
 LATE_AFTER = timedelta(hours=12)
@@ -65,7 +65,7 @@ def log_session(book: Book, session: SessionEntry, now: datetime, entered_by: st
 
     A failure that stopped the robot happened at the session's end; spares are fitted after it.
     """
-    ended_at = session.ended_at or now
+    ended_at = with_plain_offset(session.ended_at or now)
     _refuse_the_future(ended_at, now)
     if not session.hours >= 0 or session.hours > 24 * 31:
         raise RecordError(f"hours is {session.hours:g}; a session has from 0 to 744 hours.")
@@ -97,7 +97,7 @@ def log_part(
     book: Book, part: PartEntry, happened_at: datetime | None, now: datetime, entered_by: str, draft: str | None = None
 ) -> Receipt:
     """Write what happened to one part outside a session: a failure, a part found worn, or a swap of a good one."""
-    moment = happened_at or now
+    moment = with_plain_offset(happened_at or now)
     _refuse_the_future(moment, now)
     with write(book, Entry(now, entered_by, part.happened, draft)) as writer:
         sentence = _part_sentence(writer.history, part)
@@ -106,6 +106,75 @@ def log_part(
         session = _session_ended_at(writer.history, part.position, moment)
         _add(writer, _part_records(writer, part, moment, session))
     return Receipt(writer.write_number, sentence, record_ids=tuple(r.record_id for r in writer.records))
+
+
+@dataclass(frozen=True)
+class SpareEntry:
+    """A spare for a place whose part failed earlier, or was taken out; record ids, `place` is 1 in a single slot."""
+
+    position: str
+    slot: str
+    lot: str
+    place: int = 1
+
+
+def log_spare(
+    book: Book,
+    spare: SpareEntry,
+    happened_at: datetime | None,
+    now: datetime,
+    entered_by: str,
+    draft: str | None = None,
+) -> Receipt:
+    """Write that a spare was put in; a failed part that still sat there is taken out first, and the joint is free."""
+    moment = with_plain_offset(happened_at or now)
+    _refuse_the_future(moment, now)
+    with write(book, Entry(now, entered_by, "spare put in", draft)) as writer:
+        history = writer.history
+        position, slot = history.one(Position, spare.position), history.one(Slot, spare.slot)
+        robot, part_type = history.one(Robot, position.robot), history.one(PartType, slot.part_type)
+        sentence = f"{robot.code} {position.label}: {part_type.label} put in from {history.one(Lot, spare.lot).code}."
+        if writer.written_before is not None:
+            return Receipt(writer.written_before, sentence, already=True)
+        _add(writer, _spare_records(history, spare, moment))
+    return Receipt(writer.write_number, sentence, record_ids=tuple(r.record_id for r in writer.records))
+
+
+def _spare_records(history: History, spare: SpareEntry, moment: datetime) -> list[Record]:
+    whereabouts = whereabouts_of(history)
+    position, slot = history.one(Position, spare.position), history.one(Slot, spare.slot)
+    unit = _unit_in(whereabouts, position, moment)
+    _refuse_no_place(slot, spare.place)
+    old = whereabouts.part_at(unit, spare.slot, spare.place, moment)
+    records: list[Record] = []
+    if old is not None and old.removal is None:
+        failure = whereabouts.failure_of(old)
+        if failure is None:
+            raise RecordError(f"{slot.code} of joint {position.code} holds a part that is good: log a swap instead.")
+        records.append(_removal(old.fitment, spare.place, _reason_after(failure), moment))
+    records.append(_fitting(unit, spare.slot, spare.place, spare.lot, moment))
+    return records
+
+
+def _reason_after(failure: Failure) -> str:
+    if failure.cause == "another part's failure":
+        return "broken by another part"
+    return "found worn" if failure.finding == "found worn" else "failed"
+
+
+def _removal(fitment: Fitment, place: int, reason: str, moment: datetime) -> Removal:
+    return Removal(record_id=new_record_id(), happened_at=moment, fitment=fitment.record_id, place=place, reason=reason)
+
+
+def _fitting(unit: str, slot: str, place: int, lot: str, moment: datetime) -> Fitment:
+    return Fitment(
+        record_id=new_record_id(), happened_at=moment, sequence=1, unit=unit, slot=slot, first_place=place, lot=lot
+    )
+
+
+def _refuse_no_place(slot: Slot, place: int) -> None:
+    if not 1 <= place <= slot.count:
+        raise RecordError(f"{slot.code} has places 1 to {slot.count}; {place} is not one of them.")
 
 
 @dataclass(frozen=True)
@@ -121,7 +190,7 @@ class CheckEntry:
 
 def log_check(book: Book, check: CheckEntry, happened_at: datetime | None, now: datetime, entered_by: str) -> Receipt:
     """Write a bench check; a doubtful verdict also holds the joint until a person releases it."""
-    moment = happened_at or now
+    moment = with_plain_offset(happened_at or now)
     _refuse_the_future(moment, now)
     with write(book, Entry(now, entered_by, "check")) as writer:
         position = writer.history.one(Position, check.position)
@@ -167,6 +236,13 @@ def open_hold_on(history: History, robot: Robot, position: Position | None) -> s
         if hold.record_id not in lifted and subject is not None and subject == wanted:
             return hold.record_id
     return None
+
+
+def receipt_of(book: Book, draft: str) -> Receipt | None:
+    """The receipt of a draft that was written before; None if none was."""
+    with book.reading() as connection:
+        found = written_before(connection, draft)
+    return None if found is None else Receipt(found, "", already=True)
 
 
 def undo(book: Book, write_number: int, now: datetime, entered_by: str, reason: str = "undone") -> Receipt:
@@ -217,8 +293,7 @@ def _session_ended_at(history: History, position: str, moment: datetime) -> str 
 def _part_in(history: History, whereabouts: Whereabouts, part: PartEntry, moment: datetime) -> FittedPart:
     position, slot = history.one(Position, part.position), history.one(Slot, part.slot)
     unit = _unit_in(whereabouts, position, moment)
-    if not 1 <= part.place <= slot.count:
-        raise RecordError(f"{slot.code} has places 1 to {slot.count}; {part.place} is not one of them.")
+    _refuse_no_place(slot, part.place)
     found = whereabouts.part_at(unit, part.slot, part.place, moment)
     if found is None or (found.end is not None and found.end < moment):
         raise RecordError(
@@ -237,25 +312,9 @@ def _part_records(writer: Writer, part: PartEntry, moment: datetime, session: st
         records.append(_failure(writer.history, part, found, moment, session))
     if failed and part.lot is None:
         return records
-    reason = "failed" if part.happened == "failed" else part.happened
-    fitment = found.fitment
-    records.append(
-        Removal(
-            record_id=new_record_id(), happened_at=moment, fitment=fitment.record_id, place=part.place, reason=reason
-        )
-    )
+    records.append(_removal(found.fitment, part.place, part.happened, moment))
     if part.lot is not None:
-        records.append(
-            Fitment(
-                record_id=new_record_id(),
-                happened_at=moment,
-                sequence=1,
-                unit=fitment.unit,
-                slot=fitment.slot,
-                first_place=part.place,
-                lot=part.lot,
-            )
-        )
+        records.append(_fitting(found.fitment.unit, part.slot, part.place, part.lot, moment))
     return records
 
 

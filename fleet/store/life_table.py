@@ -61,7 +61,10 @@ def _read(path: Path, lines: list[list[str]]) -> LifeTable:
     for line, cells in enumerate(lines[1:], start=2):
         if not any(cell.strip() for cell in cells):
             continue
-        row = dict(zip(header, (cell.strip() for cell in cells), strict=False))
+        if len(cells) != len(header):
+            problems.append(f"{path.name} line {line}: has {len(cells)} cells, the header has {len(header)}.")
+            continue
+        row = dict(zip(header, (cell.strip() for cell in cells), strict=True))
         for name, values in columns.items():
             values.append(_number(path, line, name, row.get(name, ""), empty, problems))
         modes.append(row.get("mode") or None)

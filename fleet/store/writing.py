@@ -78,7 +78,7 @@ def write(book: Book, entry: Entry) -> Iterator[Writer]:
         If what was added contradicts the book; nothing is written then.
     """
     with book.writing() as connection:
-        before = _written_before(connection, entry.draft)
+        before = written_before(connection, entry.draft)
         writer = Writer(history=history_in(connection, LATEST), written_before=before)
         if before is not None:
             writer.write_number = before
@@ -99,7 +99,8 @@ def records_of_write(connection: Connection, write_number: int) -> list[tuple[ty
     return found
 
 
-def _written_before(connection: Connection, draft: str | None) -> int | None:
+def written_before(connection: Connection, draft: str | None) -> int | None:
+    """The write in which a draft was kept; None if it was not."""
     if draft is None:
         return None
     query = select(book_write.c.write_number).where(book_write.c.draft == draft)

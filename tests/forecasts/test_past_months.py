@@ -1,10 +1,13 @@
 from __future__ import annotations
 
+from datetime import UTC, datetime
+
 import numpy as np
 import pytest
 from scipy import stats
 
-from fleet.forecasts.past_months import verdict
+from fleet.forecasts.demand import FloatArray, quantile
+from fleet.forecasts.past_months import MonthForecast, coverage, verdict
 
 POISSON_TWO = stats.poisson(2).pmf(np.arange(60))
 
@@ -43,3 +46,22 @@ def test_z_has_mean_nought_and_variance_one_when_the_forecast_is_right() -> None
 
 def test_a_count_beyond_the_distribution_is_no_crash() -> None:
     assert verdict([(np.array([0.5, 0.5]), 7)]).z > 0
+
+
+def test_coverage_expects_what_the_ranges_hold_themselves() -> None:
+    """For small counts a range meant for 8 in 10 holds far more: a plain 80 % would call a right forecast wrong."""
+    few = stats.poisson(0.3).pmf(np.arange(20))
+    forecasts = [forecast_of(few, seen) for seen in (0, 0, 1, 0, 2, 0, 0, 1, 0, 0)]
+    found = coverage(forecasts)
+    assert found.inside == 9
+    assert found.expected == pytest.approx(10 * few[:2].sum())
+    assert found.low <= found.expected <= found.high
+
+
+def forecast_of(distribution: FloatArray, seen: int) -> MonthForecast:
+    start = datetime(2026, 1, 1, tzinfo=UTC)
+    low, high = quantile(distribution, 0.1), quantile(distribution, 0.9)
+    mass = float(distribution[low : high + 1].sum())
+    return MonthForecast(
+        start, datetime(2026, 2, 1, tzinfo=UTC), "part", "part", distribution, 0.3, low, high, mass, seen, ()
+    )
