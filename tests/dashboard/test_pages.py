@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from contextlib import closing
 from datetime import UTC, datetime, timedelta
 from pathlib import Path
 from typing import Any
@@ -14,6 +15,7 @@ from fleet.lives.ages import ages_of
 from fleet.records.history import History
 from fleet.records.ledger import Fitment, Session
 from fleet.store.book import open_book
+from fleet.store.entries import PartEntry, log_part
 from fleet.store.reading import read_history
 from tests.browser_support import PHONE, WIDE, Server, Watch, page_of, screen, settled, visit
 from tests.dashboard.conftest import NASTY
@@ -241,6 +243,20 @@ def test_a_doubtful_check_holds_the_joint_until_a_person_lifts_it(server: Server
     wide.get_by_label("Why the hold can be lifted").press("Enter")
     wide.get_by_role("button", name="Lift the hold").click()
     wide.get_by_text("The hold is lifted").wait_for()
+    settled(wide)
+    assert wide.get_by_text("left knee held").count() == 0
+
+
+def test_a_spare_put_in_frees_a_joint_whose_part_had_failed(server: Server, wide: Any, bench_book: Path) -> None:
+    now = datetime.now(UTC)
+    failed = PartEntry("R1-knee", "slot-bearing", "failed", mode="bearing: rough")
+    with closing(open_book(bench_book)) as book:
+        log_part(book, failed, now, now, "bench")
+    visit(wide, server, "/joints?robot=R1&joint=knee")
+    wide.get_by_text("left knee held").wait_for()
+    wide.get_by_role("radio", name="B-1").click()
+    wide.get_by_role("button", name="Save: spare from B-1 put in").click()
+    wide.get_by_text("put in from B-1").wait_for()
     settled(wide)
     assert wide.get_by_text("left knee held").count() == 0
 
