@@ -176,10 +176,11 @@ def plates_table(read_out: ReadOut) -> RenderableType:
     ]
     lines: list[RenderableType] = [_Listing("Print plates", _PLATE_COLUMNS, rows)] if rows else []
     lines += [_sentence(f"Cannot print: {said}") for said in plan.shortages]
-    lines.append(_caution("Nobody beside a running printer: follow its manual and the local fire rules; air the room."))
+    lines.append(_caution(_PLATE_CAUTION))
     return Group(*lines)
 
 
+_PLATE_CAUTION = "Printing with nobody there: follow the printer's manual and the local fire rules, and air the room."
 _PLATE_COLUMNS = (
     _Column("printer", text=True),
     _Column("plate", spared=True),
