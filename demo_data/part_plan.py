@@ -81,7 +81,7 @@ PARTS = (
     PlannedPart("cable", "joint cable", "CB", "16.00", "58.00", 22, 12, 20, 20, 450, pack_size=5),
     PlannedPart("belt", "toothed belt", "BT", "13.00", "44.00", 12, 9, 4, 6, 180, t10_factor=2.5, pack_size=2),
     PlannedPart("idler", "belt idler", "ID", "6.00", "40.00", 5, 3, 5, 0, 350),
-    PlannedPart("arm housing", "arm joint housing", "AH", "34.00", "110.00", 90, 4, 1, 0, 5000),
+    PlannedPart("arm housing", "arm joint housing", "AH", "34.00", "110.00", 90, 4, 1, 0, 15000),
     PlannedPart("arm bearing", "arm joint bearing", "AB", "21.00", "60.00", 35, 9, 3, 4, 300, pack_size=2),
 )
 

@@ -152,7 +152,7 @@ def log_spare_command(
         position = find_position(history, find_robot(history, robot), joint)
         slot = find_slot(history, position, part)
         lot = find_lot(history, slot.part_type, spare).record_id
-        moment = None if written_at is None else parse_time("--at", written_at, history)
+        moment = _now_at_home(history) if written_at is None else parse_time("--at", written_at, history)
         entry = SpareEntry(position.record_id, slot.record_id, lot, _place_in(slot, place))
         _say(log_spare(book, entry, moment, now(), entered_by))
 

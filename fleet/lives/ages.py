@@ -158,7 +158,8 @@ def _starting_ages(history: History, whereabouts: Whereabouts, meters: Meters) -
             starts[fitment.record_id] = np.full(len(USE_CLOCKS) + 1, np.nan)
             continue
         source = history.one(Fitment, fitment.comes_from)
-        end = _taken_out(whereabouts.parts_of_fitment[source.record_id], fitment.happened_at)
+        parts = whereabouts.parts_of_fitment[source.record_id]
+        end = _taken_out([p for p in parts if fitment.from_place in (None, p.place)], fitment.happened_at)
         use = meters.unit_use(source.unit, [source.happened_at, end])
         days = (end - source.happened_at).total_seconds() / _SECONDS_A_DAY
         starts[fitment.record_id] = starts[source.record_id] + np.append(use[1] - use[0], days)

@@ -34,11 +34,15 @@ class LifeKey:
 
 @dataclass(frozen=True, eq=False)
 class ModeData:
-    """Life data of one mode: `stop` counts what stopped the robot, `unfit` also what was worn or over its limit."""
+    """Life data of one mode: `stop` counts what stopped the robot, `unfit` also what was worn or over its limit.
+
+    `left_out` counts parts whose age is known, but not in the clock of this mode.
+    """
 
     mode: PartMode
     stop: LifeData
     unfit: LifeData
+    left_out: int
 
 
 @dataclass(frozen=True, eq=False)
@@ -103,7 +107,13 @@ def _part_data(history: History, ages: Ages, checks: _Checks, key: LifeKey, span
         key=key,
         label=label_of(history, key),
         modes=tuple(
-            ModeData(mode, stop=_life_data(seen, mode, "stop"), unfit=_life_data(seen, mode, "unfit")) for mode in modes
+            ModeData(
+                mode,
+                stop=_life_data(seen, mode, "stop"),
+                unfit=_life_data(seen, mode, "unfit"),
+                left_out=sum(span.count for span in known if mode.clock not in span.age),
+            )
+            for mode in modes
         ),
         whole=_whole_part(seen),
         failures=sum(row.span.count for row in failed),

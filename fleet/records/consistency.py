@@ -47,6 +47,7 @@ def problems_in(history: History) -> list[Problem]:
         _settings,
         _repeated_codes,
         _shares,
+        _lots,
         _sessions,
         _session_uses,
         _placements,
@@ -128,6 +129,13 @@ def _shares(history: History, _: Whereabouts) -> Iterator[Problem]:
         if abs(share - 1) > 0.005:
             code = history.one(PartType, part_type).code
             yield Problem(last[part_type].record_id, f"the shares of the modes of {code} sum to {share:g}, not to 1.")
+
+
+def _lots(history: History, _: Whereabouts) -> Iterator[Problem]:
+    for lot in history.of(Lot).values():
+        if lot.revision is not None and history.one(Revision, lot.revision).part_type != lot.part_type:
+            code = history.one(PartType, lot.part_type).code
+            yield Problem(lot.record_id, f"the revision of lot {lot.code} is not one of {code}.")
 
 
 def _sessions(history: History, _: Whereabouts) -> Iterator[Problem]:

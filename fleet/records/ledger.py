@@ -102,6 +102,7 @@ class Fitment(LedgerRecord):
     revision: str | None = reference("revision", "the revision, if no lot says it", default=None)
     serial: str | None = short("serial number", default=None)
     comes_from: str | None = reference("fitment", "the fitment it was taken out of: it keeps its age", default=None)
+    from_place: int | None = whole("which place of that fitment it was taken out of", 1, 1000, default=None)
     prior: str = choice("its age when fitted", PRIOR_AGES, default="new")
     prior_run_seconds: int | None = hours("hours run before", column="prior_hours", high=1_000_000, default=None)
     prior_load_seconds: int | None = hours(
@@ -130,6 +131,8 @@ class Fitment(LedgerRecord):
         )
         if self.prior != "stated" and any(value is not None for value in stated):
             problems.append(f"prior is {self.prior}, but an age is given; say prior stated")
+        if self.from_place is not None and self.comes_from is None:
+            problems.append("from_place is given, but not what the part comes from")
         if self.comes_from is not None and self.prior != "new":
             problems.append("a moved part keeps its age by itself; leave prior empty")
         return problems

@@ -192,6 +192,7 @@ def lives_document(read_out: ReadOut) -> Document:
                         "label": mode.mode.label,
                         "clock": mode.mode.clock,
                         "failures": mode.unfit.failures,
+                        "left_out_age_unknown": mode.data.left_out,
                         "b10": {q: round(mode.unfit.b_life_quantile(10, p), 3) for q, p in _QUANTILES.items()},
                         "data_share": round(mode.unfit.data_share, 4),
                     }

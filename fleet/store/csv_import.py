@@ -198,7 +198,8 @@ def _resolve_moved_parts(reading: _Reading) -> None:
             continue
         try:
             context = RowReferences(reading.references, reading.zone, row, record.happened_at)
-            found = replace(record, comes_from=context.source_of_moved_part())
+            source, place = context.source_of_moved_part()
+            found = replace(record, comes_from=source, from_place=place)
         except RecordError as error:
             reading.problems.append(f"{row.where}: {error}.")
             continue

@@ -146,15 +146,16 @@ class RowReferences:
             raise RecordError(f"place is empty, but {len(parts)} parts sit there; say which one failed")
         return [{"fitment": fitment} for fitment in dict.fromkeys(part.fitment.record_id for part in parts)]
 
-    def source_of_moved_part(self) -> str:
-        """The fitment that a moved part was taken out of."""
+    def source_of_moved_part(self) -> tuple[str, int]:
+        """The fitment that a moved part was taken out of, and its place there."""
         unit = self._code("unit", "from_unit")
         if unit is None:
             raise RecordError("from_unit is empty; name the module that a moved part comes from")
         slot = self._code("slot", "from_slot", self.references.history.one(Unit, unit).unit_design)
         if slot is None:
             raise RecordError("from_slot is empty; name the slot that a moved part comes from")
-        return self.references.last_removed(unit, slot, self._place("from_place") or 1, self.moment)
+        place = self._place("from_place") or 1
+        return self.references.last_removed(unit, slot, place, self.moment), place
 
     def _broken_by(self) -> str | None:
         if "broken_by_slot" not in self.row.cells:

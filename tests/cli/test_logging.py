@@ -62,14 +62,16 @@ def test_messages_tell_the_time_on_the_books_own_clock(wearbook: Command, book: 
     assert "from 2026-06-01 19:00 to 2026-06-01 20:00 overlaps" in again.err, "18:00 UTC is 20:00 in Amsterdam"
 
 
-def test_a_failure_without_a_spare_holds_the_robot_and_a_swap_frees_it(wearbook: Command, book: Path) -> None:
+def test_a_failure_without_a_spare_holds_the_robot_until_one_is_put_in(wearbook: Command, book: Path) -> None:
     answer = wearbook("log", "failure", "R1", "hip", "disc", "--mode", "split", "--cause", "print")
     assert saved(answer) == 3
     assert "R1 left hip: disc failed (disc split)." in answer.out
     held = robot(wearbook, "R1")
     assert held["held"] == "disc failed 2026-06-01 and is not replaced yet"
     assert held["finishes"] is None
-    saved(wearbook("log", "swap", "R1", "hip", "disc", "--spare", "D-2"))
+    answer = wearbook("log", "spare", "R1", "hip", "disc", "--spare", "D-2")
+    assert saved(answer) == 4
+    assert answer.out.endswith("R1 left hip: disc put in from D-2.\n")
     freed = robot(wearbook, "R1")
     assert freed["held"] is None and freed["finishes"]["mean"] > 0
     assert hours_of(wearbook)["hip", 1] == 0.0

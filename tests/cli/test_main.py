@@ -17,7 +17,7 @@ from fleet.cli.main import COMMANDS, main
 from tests.cli.conftest import Command
 
 HEAVY = ("numpy", "pandas", "scipy", "lifelines", "streamlit", "sqlalchemy", "alembic", "altair", "rich.table")
-LOG_COMMANDS = ("session", "failure", "swap", "check", "undo", "release")
+LOG_COMMANDS = ("session", "failure", "swap", "spare", "check", "undo", "release")
 
 
 def loaded_by(*arguments: str) -> set[str]:

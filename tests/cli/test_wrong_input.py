@@ -44,6 +44,8 @@ WRONG = {
     "no mode": ((*LOG_FAILURE, "disc"), "Missing option '--mode'"),
     "unknown lot": ((*LOG_FAILURE, "disc", "--mode", "split", "--spare", "D-7"), "There is no lot of disc 'D-7'"),
     "lot of another part": ((*LOG_FAILURE, "disc", "--mode", "split", "--spare", "P-1"), "no lot of disc 'P-1'"),
+    "spare for a part that is good": (("log", "spare", "R1", "hip", "disc", "--spare", "D-2"), "log a swap instead"),
+    "spare of no lot": (("log", "spare", "R1", "hip", "disc"), "Missing option '--spare'"),
     "unknown cause": ((*LOG_FAILURE, "disc", "--mode", "split", "--cause", "bad luck"), "'bad luck' is not one of"),
     "no place": ((*LOG_FAILURE, "pins", "--mode", "snapped"), "say which with --place 1 to 13"),
     "place beyond the set": ((*LOG_FAILURE, "pins", "--mode", "snapped", "--place", "14"), "places 1 to 13"),

@@ -57,7 +57,7 @@ def hours_of(history: History) -> dict[str, float]:
 
 
 def test_every_part_of_the_robot_that_ran_gains_its_hours_and_no_other_part_does(book: Book) -> None:
-    log_session(book, SessionEntry("R2", 1.5), NOW, "Ada")
+    log_session(book, SessionEntry("R2", 1.5), NOW, "bench")
     hours = hours_of(read_history(book, END))
     assert hours == {
         f"{unit} {part}": 1.5 if unit == "U3" else 0.0
@@ -68,8 +68,8 @@ def test_every_part_of_the_robot_that_ran_gains_its_hours_and_no_other_part_does
 
 def test_a_session_entered_the_next_day_ages_the_parts_of_the_day_it_ran(book: Book) -> None:
     yesterday = NOW - timedelta(days=1)
-    log_part(book, PartEntry("R2-knee", "slot-disc", "replaced while good", lot="D-2"), yesterday, NOW, "Ada")
-    receipt = log_session(book, SessionEntry("R2", 1.5, ended_at=yesterday - timedelta(hours=2)), NOW, "Ada")
+    log_part(book, PartEntry("R2-knee", "slot-disc", "replaced while good", lot="D-2"), yesterday, NOW, "bench")
+    receipt = log_session(book, SessionEntry("R2", 1.5, ended_at=yesterday - timedelta(hours=2)), NOW, "bench")
     assert "late entry for 2026-05-31" in receipt.sentence
     ages = ages_of(read_history(book, END))
     old, new = span_of(ages, "U3 disc"), next(s for s in ages.spans if s.fitment.lot == "D-2")
@@ -288,6 +288,22 @@ def test_a_moved_part_of_unknown_age_stays_unknown() -> None:
     again = fitment("U2", "disc", day(4), comes_from="odd", record_id="again")
     ages = ages_of(history_with(removal("U1 disc", day(2)), odd, *move, again))
     assert not span_of(ages, "again").known
+
+
+def test_of_two_parts_moved_out_of_one_set_each_keeps_the_age_of_its_own_place() -> None:
+    records = (
+        session("R1", day(1), 2.0),
+        removal("U1 pins", day(2), "moved", place=3),
+        session("R1", day(3), 4.0),
+        removal("U1 pins", day(4), "moved", place=9),
+        fitment("U3", "pins", day(5), first_place=1, comes_from="U1 pins", from_place=3, record_id="younger"),
+        removal("U3 pins", day(5), place=1),
+        fitment("U3", "pins", day(5), first_place=2, comes_from="U1 pins", from_place=9, record_id="older"),
+        removal("U3 pins", day(5), place=2),
+    )
+    ages = ages_of(history_with(*records))
+    assert span_of(ages, "younger", 1).entry["hours"] == 2.0
+    assert span_of(ages, "older", 2).entry["hours"] == 6.0
 
 
 def test_a_part_that_comes_from_one_nobody_has_entered_yet_is_of_unknown_age() -> None:

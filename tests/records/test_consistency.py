@@ -257,3 +257,8 @@ def test_every_mode_names_a_part_type_that_is_there() -> None:
     kept = [record for record in set_up() if not (isinstance(record, PartMode) or record.record_id == "pin")]
     found = problems_in(history_of(kept, END))
     assert {problem.sentence for problem in found} == {"its part_type names no part type of this book."}
+
+
+def test_the_revision_of_a_lot_is_one_of_its_part_type() -> None:
+    found = only(Lot(record_id="odd", code="P-7", part_type="pin", revision="disc-B"))
+    assert (found.record_id, found.sentence) == ("odd", "the revision of lot P-7 is not one of pin.")

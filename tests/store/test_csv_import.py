@@ -24,7 +24,7 @@ from fleet.store.reading import read_history
 from fleet.store.writing import Entry
 from tests.books import END, FITTED, NOW, Cells, add, day, imported_book, session, tiny_book, tiny_files, write_files
 
-ENTRY = Entry(NOW, "Ada", "import")
+ENTRY = Entry(NOW, "bench", "import")
 
 
 @pytest.fixture
@@ -354,7 +354,7 @@ def test_ids_that_a_file_states_are_kept_and_refused_when_they_come_again(book: 
 @pytest.mark.parametrize(
     ("claim", "said"),
     [
-        ({"entered_by": "Ada"}, "entered_by needs entered_at beside it"),
+        ({"entered_by": "bench"}, "entered_by needs entered_at beside it"),
         ({"entered_at": "0001-01-01T00:00+14:00"}, "entered_at is"),
         ({"entered_at": "2999-01-01"}, "entered_at is 2999-01-01T00:00:00+01:00, outside the years"),
         ({"entered_at": "soon"}, "entered_at is 'soon', not a date and time"),

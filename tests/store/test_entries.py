@@ -42,7 +42,7 @@ def book(tmp_path: Path) -> Iterator[Book]:
 
 def log(book: Book, *parts: PartEntry, draft: str | None = None, **changed: object) -> Receipt:
     values: dict[str, object] = {"robot": "R1", "hours": 1.5, "impacts": 4, "ended_at": NOW, "parts": parts}
-    return log_session(book, SessionEntry(**{**values, **changed}), NOW, "Ada", draft)  # type: ignore[arg-type]
+    return log_session(book, SessionEntry(**{**values, **changed}), NOW, "bench", draft)  # type: ignore[arg-type]
 
 
 # Sessions
@@ -160,7 +160,7 @@ def test_a_draft_pressed_by_two_hands_at_once_is_written_once(book: Book) -> Non
 
 
 def swap(book: Book, part: PartEntry, moment: object = None) -> Receipt:
-    return log_part(book, part, moment, NOW, "Ada")  # type: ignore[arg-type]
+    return log_part(book, part, moment, NOW, "bench")  # type: ignore[arg-type]
 
 
 def test_a_good_part_replaced_is_a_removal_and_no_failure(book: Book) -> None:
@@ -220,7 +220,7 @@ def test_a_part_fails_once(book: Book) -> None:
 
 
 def test_a_good_check_holds_nothing(book: Book) -> None:
-    receipt = log_check(book, CheckEntry("R1-hip", None, None, good=True), day(3), NOW, "Ada")
+    receipt = log_check(book, CheckEntry("R1-hip", None, None, good=True), day(3), NOW, "bench")
     history = read_history(book, END)
     (looked,) = history.of(BenchCheck).values()
     assert (looked.unit, looked.verdict, looked.happened_at) == ("U1", "good", day(3))
@@ -229,7 +229,7 @@ def test_a_good_check_holds_nothing(book: Book) -> None:
 
 
 def test_a_doubtful_check_holds_the_joint_until_a_person_says_why_not(book: Book) -> None:
-    log_check(book, CheckEntry("R1-hip", "slot-pins", "pin: snapped", good=False, note="play"), None, NOW, "Ada")
+    log_check(book, CheckEntry("R1-hip", "slot-pins", "pin: snapped", good=False, note="play"), None, NOW, "bench")
     history = read_history(book, NOW)
     robot, hip = history.rows[_kind(history, "R1")]["R1"], history.rows[_kind(history, "R1-hip")]["R1-hip"]
     (hold,) = history.of(Hold).values()
@@ -237,15 +237,15 @@ def test_a_doubtful_check_holds_the_joint_until_a_person_says_why_not(book: Book
     assert open_hold_on(history, robot, hip) == hold.record_id  # type: ignore[arg-type]
     assert open_hold_on(history, robot, None) is None  # type: ignore[arg-type]
     with pytest.raises(RecordError, match="Say why"):
-        lift_hold(book, hold.record_id, "  ", NOW, "Ada")
-    lift_hold(book, hold.record_id, "tightened", NOW, "Ada")
+        lift_hold(book, hold.record_id, "  ", NOW, "bench")
+    lift_hold(book, hold.record_id, "tightened", NOW, "bench")
     (release,) = read_history(book, END).of(Release).values()
     assert (release.hold, release.why) == (hold.record_id, "tightened")
     assert open_hold_on(read_history(book, NOW), robot, hip) is None  # type: ignore[arg-type]
     with pytest.raises(RecordError, match="that hold was lifted already"):
-        lift_hold(book, hold.record_id, "again", NOW, "Ada")
+        lift_hold(book, hold.record_id, "again", NOW, "bench")
     with pytest.raises(RecordError, match="no such hold"):
-        lift_hold(book, "gone", "why not", NOW, "Ada")
+        lift_hold(book, "gone", "why not", NOW, "bench")
 
 
 def _kind(history: object, record_id: str) -> type:
@@ -258,7 +258,7 @@ def _kind(history: object, record_id: str) -> type:
 def test_undo_withdraws_the_whole_write_and_leaves_the_old_part_fitted(book: Book) -> None:
     before = read_history(book, END)
     receipt = log(book, DISC)
-    said = undo(book, receipt.write_number, NOW, "Ada", "wrong robot")
+    said = undo(book, receipt.write_number, NOW, "bench", "wrong robot")
     after = read_history(book, END)
     assert {kind: held for kind, held in after.rows.items() if held} == dict(before.rows)
     assert said.sentence == f"Undone: 4 records of write {receipt.write_number} taken back."
@@ -267,30 +267,30 @@ def test_undo_withdraws_the_whole_write_and_leaves_the_old_part_fitted(book: Boo
 
 def test_what_was_undone_stays_in_the_book_with_its_reason(book: Book) -> None:
     receipt = log(book)
-    undo(book, receipt.write_number, NOW + timedelta(minutes=1), "Ada", "wrong robot")
+    undo(book, receipt.write_number, NOW + timedelta(minutes=1), "bench", "wrong robot")
     with book.reading() as connection:
         first, last = versions_of(connection, Session, receipt.record_ids[0])
     assert first.stamp is not None and last.stamp is not None
     assert (last.stamp.version, last.stamp.withdrawn, last.stamp.reason) == (2, True, "wrong robot")
-    assert (last.stamp.entered_at, last.stamp.entered_by) == (NOW + timedelta(minutes=1), "Ada")
+    assert (last.stamp.entered_at, last.stamp.entered_by) == (NOW + timedelta(minutes=1), "bench")
     assert (first.stamp.version, first.stamp.withdrawn) == (1, False)
     assert receipt.record_ids[0] in read_history(book, END, known_by=receipt.write_number).of(Session)
 
 
 def test_a_write_is_undone_once(book: Book) -> None:
     receipt = log(book)
-    undo(book, receipt.write_number, NOW, "Ada")
+    undo(book, receipt.write_number, NOW, "bench")
     with pytest.raises(RecordError, match="Nothing of write 2 is left to undo"):
-        undo(book, receipt.write_number, NOW, "Ada")
+        undo(book, receipt.write_number, NOW, "bench")
     with pytest.raises(RecordError, match="Nothing of write 99"):
-        undo(book, 99, NOW, "Ada")
+        undo(book, 99, NOW, "bench")
 
 
 def test_what_later_entries_build_on_is_not_undone_under_them(book: Book) -> None:
     first = swap(book, PartEntry("R1-hip", "slot-disc", "replaced while good", lot="D-2"), day(3))
     second = swap(book, PartEntry("R1-hip", "slot-disc", "replaced while good", lot="D-2"), day(4))
     with pytest.raises(RecordError, match="Later entries build on that one: undo those first"):
-        undo(book, first.write_number, NOW, "Ada")
-    undo(book, second.write_number, NOW, "Ada")
-    undo(book, first.write_number, NOW, "Ada")
+        undo(book, first.write_number, NOW, "bench")
+    undo(book, second.write_number, NOW, "bench")
+    undo(book, first.write_number, NOW, "bench")
     assert len(read_history(book, END).of(Removal)) == 0

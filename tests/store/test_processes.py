@@ -35,7 +35,7 @@ book = open_book(sys.argv[1])
 print("ready", flush=True)
 sys.stdin.readline()
 for number in range(int(sys.argv[3])):
-    log_session(book, SessionEntry(sys.argv[2], 1.0, ended_at=day(number)), day(number), "Ada")
+    log_session(book, SessionEntry(sys.argv[2], 1.0, ended_at=day(number)), day(number), "bench")
     for _ in range(3):  # as a page would, while the other program writes
         assert len(read_history(book, day(number)).of(Session)) > number
 book.close()
@@ -115,7 +115,7 @@ def progress(stage, count):
 event.listen(book.engine, "before_cursor_execute", before_statement)
 if when == "about to commit":
     event.listen(book.engine, "commit", lambda connection: die() if inserted else None)
-import_folder(book, Path(folder), Entry(FITTED, "Ada", "import"), progress=progress)
+import_folder(book, Path(folder), Entry(FITTED, "bench", "import"), progress=progress)
 """
 SESSIONS: list[Cells] = [
     {
@@ -146,4 +146,4 @@ def test_an_import_that_is_killed_leaves_the_book_as_it_was(tmp_path: Path, when
         assert read_history(book, END).rows == {}
         assert sound(book)
         # And the book still takes the same files.
-        assert import_folder(book, folder, Entry(FITTED, "Ada", "import")).counts["session"] == len(SESSIONS)
+        assert import_folder(book, folder, Entry(FITTED, "bench", "import")).counts["session"] == len(SESSIONS)

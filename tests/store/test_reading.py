@@ -114,7 +114,7 @@ def test_a_moment_and_its_stated_offset_read_back_exactly(local: datetime, offse
     "moment", [EARLIEST, LATEST, datetime(2026, 10, 25, 2, 30, fold=1, tzinfo=ZoneInfo("Europe/Amsterdam"))]
 )
 def test_a_record_goes_through_its_row_unchanged(moment: datetime) -> None:
-    stamp = Stamp(version=1, write_number=1, entered_at=NOW, entered_by="Ada")
+    stamp = Stamp(version=1, write_number=1, entered_at=NOW, entered_by="bench")
     robot = Robot(record_id="r", code="R9", label="Robot 9", in_service_from=moment, stamp=stamp)
     back = record_of(Robot, row_of(robot, stamp))  # type: ignore[arg-type]
     assert back == robot
@@ -124,7 +124,7 @@ def test_a_record_goes_through_its_row_unchanged(moment: datetime) -> None:
 def test_a_session_over_the_night_the_clocks_change_keeps_its_true_length(book: Book) -> None:
     zone = ZoneInfo("Europe/Amsterdam")
     ended = datetime(2026, 10, 25, 3, 30, tzinfo=zone)
-    log_session(book, SessionEntry("R1", 3.0, ended_at=ended), datetime(2026, 10, 25, 12, tzinfo=zone), "Ada")
+    log_session(book, SessionEntry("R1", 3.0, ended_at=ended), datetime(2026, 10, 25, 12, tzinfo=zone), "bench")
     (ran,) = read_history(book, END).of(Session).values()
     assert (ran.ended_at, ran.ended_at - ran.happened_at) == (
         datetime(2026, 10, 25, 2, 30, tzinfo=UTC),
@@ -144,9 +144,9 @@ def test_only_what_had_happened_is_read(book: Book) -> None:
 def _three_writes(book: Book) -> list[History]:
     """The history after each of the writes 1 to 3; the third one is entered late, for a time before the second."""
     states = [read_history(book, END)]
-    add(book, [session("R1", day(5), 2.0, record_id="second")], Entry(day(5, 18), "Ada", "session"))
+    add(book, [session("R1", day(5), 2.0, record_id="second")], Entry(day(5, 18), "bench", "session"))
     states.append(read_history(book, END))
-    add(book, [session("R1", day(3), 2.0, record_id="third")], Entry(day(6, 9), "Ada", "session"))
+    add(book, [session("R1", day(3), 2.0, record_id="third")], Entry(day(6, 9), "bench", "session"))
     states.append(read_history(book, END))
     return states
 
@@ -173,7 +173,7 @@ def test_a_withdrawn_record_is_still_known_by_the_write_before(book: Book) -> No
     ran = session("R1", day(1), 1.0)
     number = add(book, [ran])
     before = read_history(book, END)
-    with write(book, Entry(NOW, "Ada", "withdrawal")) as writer:
+    with write(book, Entry(NOW, "bench", "withdrawal")) as writer:
         writer.withdraw(ran.record_id, "never happened")
     assert ran.record_id not in read_history(book, END).of(Session)
     assert read_history(book, END, known_by=number).rows == before.rows
@@ -182,7 +182,7 @@ def test_a_withdrawn_record_is_still_known_by_the_write_before(book: Book) -> No
 
 def test_the_time_of_entry_may_be_claimed_and_then_decides_what_was_known(book: Book) -> None:
     ran = session("R1", day(1), 1.0)
-    with write(book, Entry(NOW, "Ada", "import")) as writer:
+    with write(book, Entry(NOW, "bench", "import")) as writer:
         writer.add(ran, Claim(day(2), "field lead"))
     assert ran.record_id in read_history(book, END, known_by=day(2)).of(Session)
     assert ran.record_id not in read_history(book, END, known_by=day(1, 23)).of(Session)
@@ -191,7 +191,7 @@ def test_the_time_of_entry_may_be_claimed_and_then_decides_what_was_known(book: 
 
 def test_what_names_something_entered_only_later_was_not_known_either(book: Book) -> None:
     late = fitment("U1", "disc", day(2), sequence=1, lot="D-2", record_id="late disc")
-    with write(book, Entry(NOW, "Ada", "import")) as writer:
+    with write(book, Entry(NOW, "bench", "import")) as writer:
         writer.add(removal("U1 disc", day(2)), Claim(day(2), "bench"))
         writer.add(late, Claim(day(9), "bench"))
         writer.add(removal("late disc", day(4)), Claim(day(4), "bench"))

@@ -61,16 +61,16 @@ def test_the_writer_sees_the_book_as_it_is(book: Book) -> None:
 
 def test_a_record_carries_who_entered_it_when_and_in_which_write(book: Book) -> None:
     ran = session("R1", day(1), 1.0)
-    number = add(book, [ran], Entry(NOW, "Ada", "session"))
+    number = add(book, [ran], Entry(NOW, "bench", "session"))
     stamp = read_history(book, END).one(Session, ran.record_id).stamp
     assert stamp is not None
-    assert (stamp.version, stamp.write_number, stamp.entered_at, stamp.entered_by) == (1, number, NOW, "Ada")
+    assert (stamp.version, stamp.write_number, stamp.entered_at, stamp.entered_by) == (1, number, NOW, "bench")
     assert not stamp.entered_at_claimed and not stamp.withdrawn
 
 
 def test_an_imported_time_of_entry_is_marked_as_claimed(book: Book) -> None:
     ran = session("R1", day(1), 1.0)
-    with write(book, Entry(NOW, "Ada", "import")) as writer:
+    with write(book, Entry(NOW, "bench", "import")) as writer:
         writer.add(ran, Claim(day(1, 18), "field lead"))
     stamp = read_history(book, END).one(Session, ran.record_id).stamp
     assert stamp is not None
@@ -79,7 +79,7 @@ def test_an_imported_time_of_entry_is_marked_as_claimed(book: Book) -> None:
 
 def test_a_draft_writes_once(book: Book) -> None:
     def press() -> int:
-        with write(book, Entry(NOW, "Ada", "session", draft="draft-1")) as writer:
+        with write(book, Entry(NOW, "bench", "session", draft="draft-1")) as writer:
             if writer.written_before is None:
                 writer.add(session("R1", day(1), 1.0))
         return writer.write_number
@@ -90,7 +90,7 @@ def test_a_draft_writes_once(book: Book) -> None:
 
 def test_what_is_added_to_a_draft_that_was_written_is_not_kept(book: Book) -> None:
     for _ in range(2):
-        with write(book, Entry(NOW, "Ada", "session", draft="draft-1")) as writer:
+        with write(book, Entry(NOW, "bench", "session", draft="draft-1")) as writer:
             writer.add(session("R1", day(1), 1.0))
     assert len(read_history(book, END).of(Session)) == 1
     assert writer.written_before == 2
@@ -113,7 +113,7 @@ def test_ids_are_unique_and_short_enough_for_the_book() -> None:
 def test_the_book_knows_every_id_that_it_ever_held(book: Book) -> None:
     ran = session("R1", day(1), 1.0)
     add(book, [ran])
-    with write(book, Entry(NOW + timedelta(days=1), "Ada", "withdrawal")) as writer:
+    with write(book, Entry(NOW + timedelta(days=1), "bench", "withdrawal")) as writer:
         writer.withdraw(ran.record_id, "twice")
     assert ran.record_id in record_ids_in(book)
     assert ran.record_id not in read_history(book, END).of(Session)
