@@ -76,7 +76,11 @@ def log_session(book: Book, session: SessionEntry, now: datetime, entered_by: st
             return Receipt(writer.written_before, sentence, already=True)
         run_seconds = round(session.hours * 3600)
         session_id = new_record_id()
-        records = [record for part in session.parts for record in _part_records(writer, part, ended_at, session_id)]
+        records = [
+            record
+            for number, part in enumerate(session.parts)
+            for record in _part_records(writer, part, ended_at, session_id, number)
+        ]
         stopped = any(isinstance(record, Failure) and record.finding == "stopped" for record in records)
         outcome = "stopped" if stopped else "broken off" if session.broken_off else "finished"
         logged = Session(
@@ -162,13 +166,26 @@ def _reason_after(failure: Failure) -> str:
     return "found worn" if failure.finding == "found worn" else "failed"
 
 
-def _removal(fitment: Fitment, place: int, reason: str, moment: datetime) -> Removal:
-    return Removal(record_id=new_record_id(), happened_at=moment, fitment=fitment.record_id, place=place, reason=reason)
+def _removal(fitment: Fitment, place: int, reason: str, moment: datetime, number: int = 0) -> Removal:
+    return Removal(
+        record_id=new_record_id(),
+        happened_at=moment,
+        sequence=number,
+        fitment=fitment.record_id,
+        place=place,
+        reason=reason,
+    )
 
 
-def _fitting(unit: str, slot: str, place: int, lot: str, moment: datetime) -> Fitment:
+def _fitting(unit: str, slot: str, place: int, lot: str, moment: datetime, number: int = 0) -> Fitment:
     return Fitment(
-        record_id=new_record_id(), happened_at=moment, sequence=1, unit=unit, slot=slot, first_place=place, lot=lot
+        record_id=new_record_id(),
+        happened_at=moment,
+        sequence=number,
+        unit=unit,
+        slot=slot,
+        first_place=place,
+        lot=lot,
     )
 
 
@@ -303,22 +320,27 @@ def _part_in(history: History, whereabouts: Whereabouts, part: PartEntry, moment
     return found
 
 
-def _part_records(writer: Writer, part: PartEntry, moment: datetime, session: str | None) -> list[Record]:
+def _part_records(
+    writer: Writer, part: PartEntry, moment: datetime, session: str | None, number: int = 0
+) -> list[Record]:
+    """What happened to one part, the `number`th of its write: the sequence keeps the order in which it was told."""
     whereabouts = whereabouts_of(writer.history)
     found = _part_in(writer.history, whereabouts, part, moment)
     failed = part.happened != "replaced while good"
     records: list[Record] = []
     if failed:
-        records.append(_failure(writer.history, part, found, moment, session))
+        records.append(_failure(writer.history, part, found, moment, session, number))
     if failed and part.lot is None:
         return records
-    records.append(_removal(found.fitment, part.place, part.happened, moment))
+    records.append(_removal(found.fitment, part.place, part.happened, moment, number))
     if part.lot is not None:
-        records.append(_fitting(found.fitment.unit, part.slot, part.place, part.lot, moment))
+        records.append(_fitting(found.fitment.unit, part.slot, part.place, part.lot, moment, number))
     return records
 
 
-def _failure(history: History, part: PartEntry, found: FittedPart, moment: datetime, session: str | None) -> Failure:
+def _failure(
+    history: History, part: PartEntry, found: FittedPart, moment: datetime, session: str | None, number: int
+) -> Failure:
     if part.mode is None:
         raise RecordError("Say how it failed: choose what was seen.")
     stops = history.one(Slot, part.slot).stops_at
@@ -327,6 +349,7 @@ def _failure(history: History, part: PartEntry, found: FittedPart, moment: datet
     return Failure(
         record_id=new_record_id(),
         happened_at=moment,
+        sequence=number,
         fitment=found.fitment.record_id,
         place=part.place,
         mode=part.mode,

@@ -21,6 +21,7 @@ from tests.browser_support import PHONE, WIDE, Server, Watch, page_of, screen, s
 from tests.dashboard.conftest import NASTY
 
 pytestmark = pytest.mark.browser
+expect = pytest.importorskip("playwright.sync_api").expect
 
 PLACES = {
     "before": "/before",
@@ -95,7 +96,7 @@ def test_the_bare_address_leads_to_the_first_page(server: Server, wide: Any) -> 
     wide.goto(server.address)
     wide.wait_for_url("**/before")
     settled(wide)
-    assert wide.get_by_role("heading", level=1).inner_text() == "Before a session"
+    expect(wide.get_by_role("heading", level=1)).to_have_text("Before a session")
 
 
 def test_a_session_is_logged_in_four_taps_and_every_fitted_part_gains_its_hours(
@@ -107,7 +108,7 @@ def test_a_session_is_logged_in_four_taps_and_every_fitted_part_gains_its_hours(
     phone.get_by_role("radio", name="1.5").click()
     phone.get_by_role("button", name=re.compile("Save 1.5")).click()
     phone.get_by_text(re.compile("^Saved ")).wait_for()
-    assert phone.get_by_text("1.5 h, 1 impact, finished, all parts fine.").is_visible()
+    phone.get_by_text("1.5 h, 1 impact, finished, all parts fine.").wait_for()
     screen(phone, "receipt")
     after = hours_of_parts(bench_book, "R2")
     assert {part: round(after[part] - age, 6) for part, age in before.items()} == dict.fromkeys(before, 1.5)
@@ -161,7 +162,7 @@ def test_a_double_press_writes_once_a_reload_shows_the_receipt_and_undo_takes_it
     phone.wait_for_url(re.compile("saved="))
     phone.reload()
     settled(phone)
-    assert phone.get_by_text("3 h, 1 impact, finished").is_visible()
+    phone.get_by_text("3 h, 1 impact, finished").wait_for()
     undo = phone.get_by_role("button", name="Undo this entry")
     assert undo.bounding_box()["y"] + undo.bounding_box()["height"] < place["y"]
     undo.click()
@@ -180,24 +181,24 @@ def test_what_was_tapped_comes_back_from_the_address(server: Server, phone: Any)
     said = parse_qs(urlsplit(phone.url).query)
     phone.reload()
     settled(phone)
-    assert phone.get_by_role("button", name=re.compile("Save 1.5 h, 1 impact, 1 part")).is_enabled()
+    expect(phone.get_by_role("button", name=re.compile("Save 1.5 h, 1 impact, 1 part"))).to_be_enabled()
     assert parse_qs(urlsplit(phone.url).query) == said
 
 
 def test_save_is_closed_with_the_reason_above_it_while_something_is_missing(server: Server, phone: Any) -> None:
     visit(phone, server, "/after?robot=R1&joints=knee")
-    assert phone.get_by_text("Not yet: left knee: say what happened.").is_visible()
-    assert phone.get_by_role("button", name=re.compile("^Save")).is_disabled()
-    assert phone.get_by_text("Before you open a joint").is_visible()
+    phone.get_by_text("Not yet: left knee: say what happened.").wait_for()
+    expect(phone.get_by_role("button", name=re.compile("^Save"))).to_be_disabled()
+    phone.get_by_text("Before you open a joint").wait_for()
 
 
 def test_names_that_hold_markup_are_shown_as_they_were_typed(server: Server, wide: Any) -> None:
     visit(wide, server, "/after?robot=R1&joints=hip&hip.what=failed")
-    assert wide.get_by_role("radio", name=NASTY).is_visible()
+    wide.get_by_role("radio", name=NASTY).wait_for()
     for path in ("/after", "/joints?robot=R1&joint=hip", "/lives", "/spares"):
         visit(wide, server, path)
         assert NASTY in wide.locator(".stMain").text_content(), path
-        assert wide.locator(".stMain img").count() == 0
+        expect(wide.locator(".stMain img")).to_have_count(0)
 
 
 def test_a_number_opens_what_it_is_made_of_and_closes_again(server: Server, wide: Any) -> None:
@@ -228,8 +229,8 @@ def test_arrows_move_between_tiles_enter_opens_and_back_comes_back(server: Serve
 
 def test_a_robot_that_is_not_there_gets_one_sentence(server: Server, wide: Any) -> None:
     visit(wide, server, "/after?robot=R7")
-    assert wide.get_by_text("There is no robot 'R7'").is_visible()
-    assert wide.get_by_text("Which robot ran?").is_visible()
+    wide.get_by_text("There is no robot 'R7'").wait_for()
+    wide.get_by_text("Which robot ran?").wait_for()
     assert "Traceback" not in wide.content()
 
 
@@ -244,7 +245,7 @@ def test_a_doubtful_check_holds_the_joint_until_a_person_lifts_it(server: Server
     wide.get_by_role("button", name="Lift the hold").click()
     wide.get_by_text("The hold is lifted").wait_for()
     settled(wide)
-    assert wide.get_by_text("left knee held").count() == 0
+    expect(wide.get_by_text("left knee held")).to_have_count(0)
 
 
 def test_a_spare_put_in_frees_a_joint_whose_part_had_failed(server: Server, wide: Any, bench_book: Path) -> None:
@@ -258,7 +259,7 @@ def test_a_spare_put_in_frees_a_joint_whose_part_had_failed(server: Server, wide
     wide.get_by_role("button", name="Save: spare from B-1 put in").click()
     wide.get_by_text("put in from B-1").wait_for()
     settled(wide)
-    assert wide.get_by_text("left knee held").count() == 0
+    expect(wide.get_by_text("left knee held")).to_have_count(0)
 
 
 def test_a_page_that_asks_another_machine_or_complains_is_caught(server: Server, chromium: Any) -> None:
