@@ -226,7 +226,7 @@ _LIFE_COLUMNS = (
     _Column("running", spared=True),
     _Column("age unknown", spared=True),
     _Column("1 in 10 gone by"),
-    _Column("half gone by"),
+    _Column("half gone by", spared=True),
     _Column("from records", spared=True),
     _Column("replace while good?", text=True),
 )

@@ -7,18 +7,18 @@ import re
 import subprocess
 import sys
 from contextlib import closing
-from datetime import UTC, datetime
 from pathlib import Path
 
 import pytest
 
-from demo_data.files import csv_folder
-from fleet.cli import books, options
-from fleet.records.history import KINDS
+from fleet.cli import books
+from fleet.pipeline import ReadOut
+from fleet.records.history import KINDS, History
 from fleet.store.book import open_book
 from fleet.store.csv_rows import columns_of_kind
 from tests.books import tiny_files, write_files
 from tests.cli.conftest import Command
+from tests.demo_book import AS_OF
 
 
 def write_number(path: Path) -> int:
@@ -27,10 +27,11 @@ def write_number(path: Path) -> int:
 
 
 def test_the_demo_builds_its_book_and_prints_odds_spares_and_plates(
-    wearbook: Command, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+    wearbook: Command, demo_read_out: ReadOut, monkeypatch: pytest.MonkeyPatch
 ) -> None:
-    for module in (books, options):
-        monkeypatch.setattr(module, "now", lambda: datetime(2026, 12, 1, 12, tzinfo=UTC))
+    monkeypatch.setattr(books, "now", lambda: AS_OF)
+    asked: list[History] = []
+    monkeypatch.setattr("fleet.pipeline.read_out", lambda history, _: asked.append(history) or demo_read_out)
     answer = wearbook("demo", "--print-only", "--dir", "some/where")
     assert (answer.code, answer.err) == (0, "")
     assert "an invented fleet, not measurements" in answer.out
@@ -39,6 +40,9 @@ def test_the_demo_builds_its_book_and_prints_odds_spares_and_plates(
     assert at == sorted(at)
     assert os.listdir("some/where") == ["demo.db"]
     assert write_number(Path("some/where/demo.db")) == 1
+    assert {kind: len(held) for kind, held in asked[0].rows.items()} == {
+        kind: len(held) for kind, held in demo_read_out.history.rows.items()
+    }
 
 
 def test_a_second_demo_takes_the_book_as_it_is(own_demo_book: Path) -> None:
@@ -136,13 +140,6 @@ def test_the_columns_of_every_file_are_listed_with_their_meaning(wearbook: Comma
         names = [line.split()[0] for line in by_file[cls.kind].splitlines()[1:]]  # type: ignore[attr-defined]
         assert names == [*columns.needed, *columns.optional]
     assert "inspect" not in answer.out and "None" not in answer.out
-
-
-def test_the_demos_own_files_are_an_example_that_imports(wearbook: Command) -> None:
-    wearbook("new", "own.db", "--bare")
-    answer = wearbook("import", csv_folder(), "--book", "own.db", "--dry-run")
-    assert (answer.code, answer.err) == (0, "")
-    assert "10 robot" in answer.out
 
 
 def test_the_dashboard_of_no_book_is_refused_before_it_starts(wearbook: Command) -> None:
