@@ -12,7 +12,6 @@ from fleet.lives.ages import PartSpan
 from fleet.lives.part_data import LifeKey, life_key_of
 from fleet.pipeline import ReadOut
 from fleet.plans.spare_list import SpareNeed
-from fleet.records.ledger import Purchase
 
 _LEVEL = 0.8
 _MOST_TICKS = 300
@@ -106,12 +105,12 @@ def _records_at(steps: pd.DataFrame, hours: float) -> float | None:
 
 
 def stock_steps(found: ReadOut, need: SpareNeed) -> pd.DataFrame:
-    """Parts there at the start of each week: what is on hand, and all that is on order once the last order is due."""
-    end = len(need.weeks)
+    """Parts there from each moment on, in weeks: what is on hand, and each order once it is due."""
+    end = float(len(need.weeks))
     steps = [(0.0, need.on_hand)]
-    dues = [order.due_at for order in found.history.of(Purchase).values() if order.part_type == need.part_type]
-    if need.on_order and dues:
-        weeks = (max(dues) - found.history.as_of).total_seconds() / (7 * 86_400)
-        steps.append((min(max(weeks, 0.0), float(end)), need.on_hand + need.on_order))
-    steps.append((float(end), steps[-1][1]))
+    for order in need.orders:
+        weeks = (order.due_at - found.history.as_of).total_seconds() / (7 * 86_400)
+        if 0.0 <= weeks <= end:
+            steps.append((weeks, steps[-1][1] + order.quantity))
+    steps.append((end, steps[-1][1]))
     return pd.DataFrame(steps, columns=["week", "parts"])

@@ -9,6 +9,7 @@ import numpy as np
 
 from fleet.errors import PlanError
 from fleet.fits.part_lives import PartLife, fit_part_lives
+from fleet.forecasts.demand import MOST_DRAWS
 from fleet.forecasts.hours_life import HoursLife
 from fleet.forecasts.life_draws import LifeDraws, draw_life
 from fleet.forecasts.next_session import NextSession, next_session
@@ -16,7 +17,7 @@ from fleet.forecasts.part_demand import PartDemand, part_demands
 from fleet.forecasts.part_outlook import PartOutlook, part_outlook
 from fleet.forecasts.parts_now import slots_now
 from fleet.forecasts.past_months import MonthForecast, month_forecasts
-from fleet.forecasts.planned_use import robot_plans
+from fleet.forecasts.planned_use import robot_plans, unplanned_robots
 from fleet.lives.ages import Ages, ages_of
 from fleet.lives.part_data import Endpoint, LifeKey, part_data
 from fleet.plans.plate_list import PlateList, plate_list
@@ -55,7 +56,7 @@ class Question:
 
 @dataclass(frozen=True, eq=False)
 class ReadOut:
-    """Everything that is said of a book at one moment."""
+    """Everything that is said of a book at one moment; `cautions` are sentences to stand beside all of it."""
 
     history: History
     question: Question
@@ -67,6 +68,7 @@ class ReadOut:
     spares: tuple[SpareNeed, ...]
     plates: PlateList
     replacements: tuple[Replacement, ...]
+    cautions: tuple[str, ...]
 
 
 def read_out(history: History, question: Question) -> ReadOut:
@@ -75,8 +77,12 @@ def read_out(history: History, question: Question) -> ReadOut:
     lives = fit_part_lives(history, part_data(history, ages))
     slots = slots_now(history, ages, lives)
     plans = robot_plans(history, question.session_hours)
-    stop, unfit = _draws(lives, "stop"), _draws(lives, "unfit")
-    in_hours = {key: HoursLife(unfit[key].thinned(SUMMARY_DRAWS), life.per_hour) for key, life in lives.items()}
+    stop, unfit, summary = (
+        _draws(lives, "stop"),
+        _draws(lives, "unfit", MOST_DRAWS),
+        _draws(lives, "unfit", SUMMARY_DRAWS),
+    )
+    in_hours = {key: HoursLife(summary[key], life.per_hour) for key, life in lives.items()}
     demands = part_demands(history, ages, slots, unfit, plans, question.weeks)
     spares = spare_list(history, demands, lives, question.target)
     return ReadOut(
@@ -90,6 +96,7 @@ def read_out(history: History, question: Question) -> ReadOut:
         spares=spares,
         plates=plate_list(history, spares, demands, question.target),
         replacements=replacement_list(history, lives, in_hours),
+        cautions=unplanned_robots(history, plans),
     )
 
 
@@ -108,14 +115,15 @@ def look_back(now: History, months: Sequence[History]) -> tuple[MonthForecast, .
         ages = ages_of(then)
         lives = fit_part_lives(then, part_data(then, ages))
         slots = slots_now(then, ages, lives)
-        found += month_forecasts(then, now, end, ages, slots, _draws(lives, "unfit"), ages_now)
+        found += month_forecasts(then, now, end, ages, slots, _draws(lives, "unfit", MOST_DRAWS), ages_now)
     return tuple(found)
 
 
-def _draws(lives: Mapping[LifeKey, PartLife], endpoint: Endpoint) -> dict[LifeKey, LifeDraws]:
-    """Joint draws of every life; seeded, so that the same book always gets the same answer."""
+def _draws(lives: Mapping[LifeKey, PartLife], endpoint: Endpoint, n_draws: int = DRAWS) -> dict[LifeKey, LifeDraws]:
+    """Joint draws of every life; seeded and in order of their labels, so that the same records get the same answer."""
     rng = np.random.default_rng(SEED)
+    by_label = sorted(lives.items(), key=lambda item: item[1].label)
     return {
-        key: draw_life([(m.mode.code, m.mode.clock, getattr(m, endpoint)) for m in life.modes], DRAWS, rng)
-        for key, life in lives.items()
+        key: draw_life([(m.mode.code, m.mode.clock, getattr(m, endpoint)) for m in life.modes], n_draws, rng)
+        for key, life in by_label
     }

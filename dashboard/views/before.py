@@ -50,7 +50,8 @@ def draw() -> None:
     kept = {"hours": None if said == _AS_PLANNED else said, "why": chosen("why")}
     lead(_sentence(found))
     running = [robot for robot in robots if robot.finishes is not None]
-    show_linked(_held(robots), _odds(running, kept["hours"]), _look_at(running), key="before")
+    unplanned = cautions([caution("No plan", sentence) for sentence in found.cautions])
+    show_linked(unplanned, _held(robots), _odds(running, kept["hours"]), _look_at(running), key="before")
     worked_out(found.history)
     why = next((robot for robot in robots if robot.code == kept["why"]), None)
     if why is not None:
@@ -68,7 +69,7 @@ def _sentence(found: ReadOut) -> Html:
     running = [robot for robot in robots if robot.finishes is not None]
     lengths = sorted({robot.hours for robot in running})
     each = f"{hours(lengths[0])} each" if len(lengths) == 1 else "each as planned"
-    said = [f"{count(len(running), 'robot')} can run, {each}"]
+    said = [f"{count(len(running), 'robot')} can run, {each}" if running else "No robot can run"]
     held = sum(robot.held is not None for robot in robots)
     unknown = len(robots) - len(running) - held
     said += [f"{held} must not"] if held else []
@@ -99,6 +100,8 @@ def _held_block(robot: RobotOutlook, held: Held) -> Html:
 
 def _odds(robots: Sequence[RobotOutlook], hours_said: str | None) -> Html:
     """The table of robots, lowest odds first; when there are many, those that hardly ever stop fold away."""
+    if not robots:
+        return Html("")
     quiet = [r for r in robots if r.finishes is not None and r.finishes.mean >= _QUIET and len(robots) > _MANY]
     rest = [robot for robot in robots if robot not in quiet]
     words = (
@@ -134,10 +137,17 @@ def _row(robot: RobotOutlook, hours_said: str | None) -> list[str | Html]:
     top = robot.joints[0] if robot.joints else None
     return [
         first,
-        joined_html([why, under, said]),
+        joined_html([why, under, said, _ages_assumed(robot)]),
         element("span", drawn, class_="wide-only"),
         "" if top is None else _joint(robot, top),
     ]
+
+
+def _ages_assumed(robot: RobotOutlook) -> Html:
+    if not robot.ages_assumed:
+        return Html("")
+    words = f"age unknown, assumed, for {robot.ages_assumed:,} of {count(robot.parts, 'part')}"
+    return element("div", words, class_="soft small")
 
 
 def _joint(robot: RobotOutlook, joint: JointOutlook) -> Html:
@@ -164,6 +174,8 @@ def _look_at(robots: Sequence[RobotOutlook]) -> Html:
         for joint in robot.joints
         if joint.word != "settled"
     ]
+    if not robots:
+        return Html("")
     if not lines:
         words = "No joint is wearing or due for these hours. Turn every joint by hand all the same, and listen."
         return joined_html([head, element("p", words)])

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 
 import streamlit as st
@@ -31,7 +32,7 @@ from fleet.pipeline import Question, ReadOut
 from fleet.plans.replacement import NO_LIMIT, NOT_BY_AGE, ReplacementAge
 from fleet.records.set_up import PartType
 from fleet.records.vocabulary import CLOCK_UNITS
-from fleet.report.wording import NO_BREAK, capital, count, figure, percent, span
+from fleet.report.wording import NO_BREAK, capital, count, figure, percent, saved, span
 
 _NOT_ASKED = "Nobody has said yet how long these are believed to last: a wide guess stands in."
 
@@ -97,12 +98,12 @@ def _short_advice(advice: ReplacementAge | None) -> str:
     if advice.verdict == NOT_BY_AGE:
         return "no"
     if advice.verdict == NO_LIMIT:
-        return f"not worth it ({_saved(advice)})"
+        return "not worth it"
     return f"at {figure(advice.age)}{NO_BREAK}h ({_saved(advice)})"
 
 
 def _saved(advice: ReplacementAge) -> str:
-    return f"saves {percent(max(advice.saving, 0.0))}{NO_BREAK}%"
+    return f"saves {saved(advice)}"
 
 
 def _one_type(found: ReadOut, keys: Sequence[LifeKey]) -> None:
@@ -180,7 +181,9 @@ def _advice_words(advice: ReplacementAge | None) -> Html:
     if advice is None:
         return joined_html([head, element("p", "None of these runs now.")])
     if advice.verdict == NOT_BY_AGE:
-        said = "No: an old one is no more likely to fail than a new one, or replacing costs as much as it saves."
+        said = "No: an old one is no more likely to fail than a new one."
+    elif advice.verdict == NO_LIMIT and not math.isfinite(advice.age):
+        said = "Not worth a limit: no age costs less than running to failure."
     elif advice.verdict == NO_LIMIT:
         said = f"Not worth a limit: the best age, {figure(advice.age)} h, {_saved(advice)} of the cost."
     else:

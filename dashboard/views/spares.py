@@ -13,7 +13,7 @@ from dashboard.choices import Choices
 from dashboard.curves import stock_steps
 from dashboard.frame import empty_book, ground_now, lead, title, worked_out
 from dashboard.links import chosen, keep_address, show, show_linked
-from dashboard.marks import Html, address, assumption, caution, element, folded, joined_html, link, table
+from dashboard.marks import Html, address, assumption, caution, cautions, element, folded, joined_html, link, table
 from fleet.pipeline import Question, ReadOut
 from fleet.plans.spare_list import SpareNeed
 from fleet.records.set_up import PartType
@@ -43,7 +43,8 @@ def draw() -> None:
     kept = {"weeks": None if weeks == "8" else weeks, "target": None if target == "90" else target}
     shown = next((need for need in found.spares if need.code == chosen("part")), found.spares[0])
     lead(_sentence(found))
-    show_linked(_short_list(found, kept), key="spares-short")
+    unplanned = cautions([caution("No plan", sentence) for sentence in found.cautions])
+    show_linked(unplanned, _short_list(found, kept), key="spares-short")
     _fan(found, shown)
     everything = folded(f"All {count(len(found.spares), 'part')} in one table", _table(found, kept))
     show_linked(everything, key="spares-all")

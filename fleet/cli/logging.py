@@ -155,6 +155,7 @@ def log_spare_command(
         moment = _now_at_home(history) if written_at is None else parse_time("--at", written_at, history)
         entry = SpareEntry(position.record_id, slot.record_id, lot, _place_in(slot, place))
         _say(log_spare(book, entry, moment, now(), entered_by))
+        _warn_of_spare(history, lot)
 
 
 def _place_in(slot: Slot, place: int | None) -> int:
@@ -199,6 +200,7 @@ def _log_part(
             cause=cause,
         )
         _say(log_part(book, part, _when(history, robot, written_at), now(), entered_by))
+        _warn_of_spare(history, part.lot)
 
 
 def _now_at_home(history: History) -> datetime:
@@ -287,8 +289,33 @@ def log_release_command(robot: str, joint: str | None, why: str, where: str | No
         position: Position | None = None if joint is None else find_position(history, found, joint)
         hold = open_hold_on(history, found, position)
         if hold is None:
-            raise RecordError(f"{robot}{'' if joint is None else ' ' + joint} is not held by anyone.")
+            raise RecordError(_not_held(history, found, position))
         _say(lift_hold(book, hold, why, now(), entered_by))
+
+
+def _not_held(history: History, robot: Robot, position: Position | None) -> str:
+    from fleet.store.entries import joints_held
+
+    if position is not None:
+        return f"{robot.code} {position.code} is not held by anyone."
+    held = [joint.code for joint in joints_held(history, robot)]
+    hint = f"; its joint {held[0]} is: add --joint {held[0]}." if held else "."
+    return f"{robot.code} itself is not held by anyone{hint}"
+
+
+def _warn_of_spare(history: History, lot: str | None) -> None:
+    """Say on standard error what is odd about the lot a spare comes from; it is kept all the same."""
+    from fleet.plans.stock import stock_by_lot
+
+    for stock in stock_by_lot(history):
+        if stock.lot != lot:
+            continue
+        if stock.on_hand <= 0:
+            click.echo(f"Note: by the records lot {stock.code} had none left; count the shelf.", err=True)
+        if stock.superseded:
+            click.echo(f"Note: lot {stock.code} is of a revision that is superseded.", err=True)
+        if stock.kept_apart:
+            click.echo(f"Note: lot {stock.code} is kept apart because something is odd about it.", err=True)
 
 
 def _say(receipt: Receipt) -> None:

@@ -58,6 +58,7 @@ def now() -> datetime:
 
 def history_of_book(book: Book, as_of: str | None, known_by: str | None) -> History:
     """What the book holds, as of a moment and as known by a moment."""
+    from fleet.errors import RecordError
     from fleet.store.reading import read_history
 
     today = read_history(book, now())
@@ -67,6 +68,10 @@ def history_of_book(book: Book, as_of: str | None, known_by: str | None) -> Hist
     known: int | datetime | None = None
     if known_by is not None:
         known = _write_number(known_by) if known_by.isdecimal() else parse_time("--known-by", known_by, today)
+    if moment > now() + timedelta(days=1):
+        raise RecordError("--as-of lies in the future: parts do not age before their robots run.")
+    if isinstance(known, int) and known > today.write_number:
+        raise RecordError(f"--known-by {known}: the last write of this book is {today.write_number}.")
     return read_history(book, moment, known)
 
 

@@ -72,7 +72,10 @@ class JointOutlook:
 
 @dataclass(frozen=True)
 class RobotOutlook:
-    """One robot: its odds of finishing, unless it is held. Joints: the one most likely to stop it first."""
+    """One robot: its odds of finishing, unless it is held. Joints: the one most likely to stop it first.
+
+    Of its `parts`, `ages_assumed` are of an age that nobody knows.
+    """
 
     robot: str
     code: str
@@ -82,6 +85,8 @@ class RobotOutlook:
     finishes: Chance | None
     failures_seen: int
     mostly_assumption: bool
+    ages_assumed: int
+    parts: int
     joints: tuple[JointOutlook, ...]
 
 
@@ -194,14 +199,16 @@ def _robot_outlook(
         finishes=finishes,
         failures_seen=sum({slot.life: slot.failures_seen for slot in outlooks}.values()),
         mostly_assumption=share > 0.5,
+        ages_assumed=sum(part.span.count for slot in slots for part in slot.running if part.age_assumed),
+        parts=sum(part.span.count for slot in slots for part in slot.running),
         joints=tuple(joints),
     )
 
 
 def _assumed_share(slots: Sequence[SlotOutlook]) -> float:
-    """Share of a robot's chance of a stop that comes from parts whose life is mostly assumption."""
+    """Share of a robot's chance of a stop that comes from parts whose life, or age, is mostly assumption."""
     total = sum(slot.stops.mean for slot in slots)
-    assumed = sum(slot.stops.mean for slot in slots if slot.mostly_assumption)
+    assumed = sum(slot.stops.mean for slot in slots if slot.mostly_assumption or slot.age_assumed)
     return assumed / total if total > 0 else 0.0
 
 
@@ -244,7 +251,7 @@ def _slot_outlook(history: History, slot: SlotNow, odds: SessionOdds, lives: Map
         age_assumed=any(part.age_assumed for part in slot.running),
         life=key,
         stops=_flipped(odds.slot.get((slot.position.robot, slot.position.record_id, slot.slot.record_id))),
-        failures_seen=0 if life is None else life.data.failures,
+        failures_seen=0 if life is None else life.data.failures_seen,
         mostly_assumption=life is None or life.mostly_assumption,
         record_ids=tuple(part.span.fitment.record_id for part in slot.running),
     )

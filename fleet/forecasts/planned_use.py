@@ -51,6 +51,16 @@ def robots_in_service(history: History) -> list[Robot]:
     ]
 
 
+def unplanned_robots(history: History, plans: Mapping[str, RobotPlan]) -> tuple[str, ...]:
+    """A sentence for every robot that has no usage plan: what was taken for it instead."""
+    return tuple(
+        f"{history.one(Robot, robot).code} has no usage plan: taken as {plan.hours_per_week:.3g} h a week, "
+        "as it ran so far; enter one."
+        for robot, plan in plans.items()
+        if not plan.stated
+    )
+
+
 def _plan(history: History, robot: Robot, stated: UsagePlan | None, session_hours: float | None) -> RobotPlan:
     if stated is not None:
         hours = stated.session_hours if session_hours is None else session_hours

@@ -13,7 +13,8 @@ from fleet.lives.ages import Age, Ages, PartSpan
 from fleet.lives.life_data import LifeData
 from fleet.records.history import History
 from fleet.records.ledger import BenchCheck, Failure, Fitment, Session
-from fleet.records.set_up import Lot, PartMode, PartType, Revision, Slot
+from fleet.records.set_up import Lot, PartMode, PartType, Position, Revision, Slot
+from fleet.records.whereabouts import Whereabouts
 
 Endpoint = Literal["stop", "unfit"]
 
@@ -51,8 +52,8 @@ class PartData:
 
     `whole` is the part as a whole in running hours, by whatever mode it failed, a failure at the age at which it was
     found: for the steps of a picture, while `modes` serve the fits. `left_out` counts parts whose age nobody knows,
-    `no_use` failures before any use; neither is in the tables. `use` is the total use of all parts seen, by clock, from
-    which one clock's rate against another follows.
+    `failures_left_out` those of them that failed, `no_use` failures before any use: none of these is in the tables.
+    `use` is the total use of all parts seen, by clock, from which one clock's rate against another follows.
     """
 
     key: LifeKey
@@ -60,11 +61,17 @@ class PartData:
     modes: tuple[ModeData, ...]
     whole: LifeData
     failures: int
+    failures_left_out: int
     running: int
     suspended: int
     left_out: int
     no_use: int
     use: Age
+
+    @property
+    def failures_seen(self) -> int:
+        """All failures that were logged, those of parts of unknown age too."""
+        return self.failures + self.failures_left_out
 
 
 def life_key_of(history: History, fitment: Fitment) -> LifeKey:
@@ -94,12 +101,13 @@ def part_data(history: History, ages: Ages) -> dict[LifeKey, PartData]:
     for part_type in history.of(PartType):
         if not any(key.part_type == part_type for key in spans):
             spans[LifeKey(part_type)] = []
-    checks = _Checks(history)
+    checks = _Checks(history, ages.whereabouts)
     return {key: _part_data(history, ages, checks, key, held) for key, held in spans.items()}
 
 
 def _part_data(history: History, ages: Ages, checks: _Checks, key: LifeKey, spans: Sequence[PartSpan]) -> PartData:
     modes = [mode for mode in history.of(PartMode).values() if mode.part_type == key.part_type]
+    modes.sort(key=lambda mode: mode.code)
     known = [span for span in spans if span.known]
     seen = [_observe(history, ages, checks, span, modes) for span in known]
     failed = [row for row in seen if row.failure is not None]
@@ -117,6 +125,7 @@ def _part_data(history: History, ages: Ages, checks: _Checks, key: LifeKey, span
         ),
         whole=_whole_part(seen),
         failures=sum(row.span.count for row in failed),
+        failures_left_out=sum(span.count for span in spans if not span.known and _failed_by_itself(span)),
         running=sum(span.count for span in spans if span.running),
         suspended=sum(row.span.count for row in seen) - sum(row.span.count for row in failed),
         left_out=sum(span.count for span in spans) - sum(span.count for span in known),
@@ -143,6 +152,10 @@ def _total_use(spans: Iterable[PartSpan]) -> Age:
     return dict(total)
 
 
+def _failed_by_itself(span: PartSpan) -> bool:
+    return span.failure is not None and span.failure.cause != "another part's failure"
+
+
 @dataclass(frozen=True)
 class _Observed:
     """One span as the likelihood sees it: in (lower, upper] its failure, exact where both are equal.
@@ -162,7 +175,7 @@ class _Observed:
 
 def _observe(history: History, ages: Ages, checks: _Checks, span: PartSpan, modes: Sequence[PartMode]) -> _Observed:
     failure = span.failure
-    own = failure is not None and failure.cause != "another part's failure"
+    own = _failed_by_itself(span)
     hidden = [m for m in modes if m.noticed == "at a check" and not (own and failure and failure.mode == m.record_id)]
     seen_good = {mode.record_id: _age_last_seen_good(ages, checks, span, mode) for mode in hidden}
     if failure is None or not own:
@@ -178,7 +191,8 @@ def _age_last_seen_good(ages: Ages, checks: _Checks, span: PartSpan, mode: PartM
     A part taken out while good, to be replaced or moved, was in someone's hand. Where no check of the module was ever
     noted, people are taken to look after every session.
     """
-    in_hand = span.removal is not None and span.removal.reason in ("replaced while good", "moved")
+    removal = span.removal
+    in_hand = removal is not None and removal.reason in ("replaced while good", "moved") and not removal.looked_bad
     if (in_hand and span.failure is None) or not checks.ever(span.fitment):
         return span.age
     end = ages.end_of(span)
@@ -195,7 +209,7 @@ def _counts_as_stop(history: History, span: PartSpan, failure: Failure) -> bool:
 def _last_known_good(history: History, checks: _Checks, span: PartSpan, failure: Failure) -> datetime | None:
     """The moment after which the failure must have happened; None if its own moment is known exactly."""
     if failure.finding == "found worn" or failure.how_found == "at a check":
-        return checks.last_good(span.fitment, failure.mode, failure.happened_at)
+        return checks.last_look_before(span.fitment, failure)
     if failure.happened_until is not None:
         return max(failure.happened_at, span.fitment.happened_at)
     session = None if failure.session is None else history.of(Session).get(failure.session)
@@ -205,9 +219,13 @@ def _last_known_good(history: History, checks: _Checks, span: PartSpan, failure:
 
 
 class _Checks:
-    """The good verdicts on each module, in order of time."""
+    """The good verdicts on each module, in order of time, and when each robot ran."""
 
-    def __init__(self, history: History) -> None:
+    def __init__(self, history: History, whereabouts: Whereabouts) -> None:
+        self._history, self._whereabouts = history, whereabouts
+        self._sessions: dict[str, list[datetime]] = defaultdict(list)
+        for session in history.of(Session).values():
+            self._sessions[session.robot].append(session.happened_at)
         self._good: dict[str, list[BenchCheck]] = defaultdict(list)
         for check in history.of(BenchCheck).values():
             if check.verdict == "good":
@@ -216,6 +234,19 @@ class _Checks:
     def ever(self, fitment: Fitment) -> bool:
         """Whether this module was ever noted as checked."""
         return bool(self._good.get(fitment.unit))
+
+    def last_look_before(self, fitment: Fitment, failure: Failure) -> datetime:
+        """When a part that was found to have failed had last been seen to be good.
+
+        Where no check of the module was ever noted, people are taken to look after every session: it was good when the
+        last one before the finding began.
+        """
+        if self.ever(fitment):
+            return self.last_good(fitment, failure.mode, failure.happened_at)
+        position = self._whereabouts.position_of(fitment.unit, failure.happened_at)
+        ran = [] if position is None else self._sessions[self._history.one(Position, position).robot]
+        at = bisect_left(ran, failure.happened_at)
+        return max(ran[at - 1], fitment.happened_at) if at else fitment.happened_at
 
     def last_good(self, fitment: Fitment, mode: str, before: datetime) -> datetime:
         """The last check before a moment that could have shown a mode and did not; else when the part was fitted."""

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from datetime import datetime, timedelta
@@ -13,6 +14,9 @@ from fleet.records.history import History
 from fleet.records.ledger import Plate
 from fleet.records.set_up import Lot, PartType, Presence, Printer, Spool
 from fleet.records.vocabulary import WEEKDAYS
+
+# Judgement: a part type that was never printed is counted as if 4 of 4 had come out good.
+_UNSEEN_YIELD = (4, 4)
 
 
 @dataclass(frozen=True)
@@ -33,7 +37,7 @@ def plate_list(
     target : float
         Chance with which enough good parts should come off the plates.
     """
-    needs = tuple(_need(history, spare) for spare in spares if spare.printed and _wanted(spare) > 0)
+    needs = tuple(need for spare in spares if spare.printed for need in _needs(history, spare))
     plan = plan_plates(
         needs,
         _printers(history),
@@ -49,7 +53,7 @@ def plate_list(
     return PlateList(needs, plan)
 
 
-def _need(history: History, spare: SpareNeed) -> PrintNeed:
+def _need(history: History, spare: SpareNeed, wanted: int, due: datetime) -> PrintNeed:
     part_type = history.one(PartType, spare.part_type)
     assert part_type.parts_per_plate is not None and part_type.print_minutes is not None
     assert part_type.plate_minutes is not None and part_type.nozzle_mm is not None and part_type.material is not None
@@ -59,8 +63,8 @@ def _need(history: History, spare: SpareNeed) -> PrintNeed:
         part=spare.code,
         label=spare.label,
         revision="" if newest is None else newest.code,
-        good_wanted=_wanted(spare),
-        due=_due(history, spare),
+        good_wanted=wanted,
+        due=due,
         material=part_type.material,
         nozzle_mm=part_type.nozzle_mm,
         parts_per_plate=part_type.parts_per_plate,
@@ -72,25 +76,34 @@ def _need(history: History, spare: SpareNeed) -> PrintNeed:
     )
 
 
-def _wanted(spare: SpareNeed) -> int:
-    """Good parts to print so that the stock lasts through the weeks shown; what is on the printers counts."""
-    return max(spare.short, spare.short_by_end) - spare.printing
+def _needs(history: History, spare: SpareNeed) -> list[PrintNeed]:
+    """What must be ready before the first short week, and the rest before the week for which that is too little.
 
-
-def _due(history: History, spare: SpareNeed) -> datetime:
-    """Before the first week in which the stock may not last; at the latest when it could be restocked."""
-    weeks = spare.short_from_week
-    days = spare.days_until_restocked if weeks is None else (weeks - 1) * DAYS_A_WEEK
-    return history.as_of + timedelta(days=max(days, 1))
+    What is on the printers counts as far as it is likely to come out good.
+    """
+    good, started = _yield(history, spare.part_type)
+    coming = math.floor(spare.printing * good / started)
+    missing = [max(short - coming, 0) for short in spare.short_by_week]
+    first = next((short for short in missing if short), 0)
+    urgent = max(first, spare.short - coming)
+    needs = []
+    for wanted, covered in ((urgent, 0), (missing[-1] - urgent, urgent)):
+        if wanted > 0:
+            week = next((week for week, short in enumerate(missing) if short > covered), None)
+            days = spare.days_until_restocked if week is None else week * DAYS_A_WEEK
+            needs.append(_need(history, spare, wanted, history.as_of + timedelta(days=max(days, 1))))
+    return needs
 
 
 def _yield(history: History, part_type: str) -> tuple[int, int]:
-    """Good parts and parts started on all finished plates of a part type."""
+    """Good parts and parts started on all finished plates of a part type; as judged where there is none yet."""
     plates = [
         plate
         for plate in history.of(Plate).values()
         if plate.good is not None and history.one(Lot, plate.lot).part_type == part_type
     ]
+    if not plates:
+        return _UNSEEN_YIELD
     return sum(plate.good or 0 for plate in plates), sum(plate.started for plate in plates)
 
 

@@ -168,6 +168,7 @@ def plan_plates(
     _check(needs, printers, spools, presence, now)
     shop = _Workshop(printers, spools, _Calendar(presence, now, ZoneInfo(zone)), now)
     shortages: list[str] = []
+    unplanned: dict[tuple[str, str], int] = {}
     for need in sorted(needs, key=lambda need: (need.due, need.part, need.revision)):
         name = f"{need.label} ({need.revision})" if need.revision else need.label
         try:
@@ -178,9 +179,11 @@ def plan_plates(
         while left > 0:
             problem = shop.add_plate(need, left)
             if problem is not None:
-                shortages.append(f"{name}: {left} of its prints are not planned: {problem}")
+                unplanned[name, problem] = unplanned.get((name, problem), 0) + left
                 break
             left -= shop.plates[-1].count
+    shortages = list(dict.fromkeys(shortages))
+    shortages += [f"{name}: {left} of its prints are not planned: {said}" for (name, said), left in unplanned.items()]
     ordered = sorted(shop.plates, key=lambda plate: (plate.start, plate.printer))
     plates = tuple(replace(plate, number=number) for number, plate in enumerate(ordered, start=1))
     return PlatePlan(plates, tuple(plate for plate in plates if plate.late), tuple(shortages))

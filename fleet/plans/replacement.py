@@ -71,8 +71,8 @@ class ReplacementAge:
     flat_low, flat_high : float
         Ages between which the cost rate is within 5 % of its least. [clock]
     verdict : str
-        "replace at age", "not worth a limit" (saving below 10 %) or "do not replace by age" (P(shape < 1) above one
-        half, or no age beats running to failure).
+        "replace at age", "not worth a limit" (saving below 10 %, or no age beats running to failure) or "do not replace
+        by age" (P(shape < 1) above one half).
     """
 
     age: float
@@ -128,7 +128,8 @@ def replacement_age(
     run_rate = float(lives.weight @ lives.run_to_failure)
     age = np.inf if lives.early_failures > 0.5 else _cheapest_age(lives)
     if not np.isfinite(age):
-        return ReplacementAge(np.inf, run_rate, run_rate, 0.0, 0.0, 0.0, np.inf, np.inf, NOT_BY_AGE)
+        verdict = NOT_BY_AGE if lives.early_failures > 0.5 else NO_LIMIT
+        return ReplacementAge(np.inf, run_rate, run_rate, 0.0, 0.0, 0.0, np.inf, np.inf, verdict)
     node_rates = lives.rates(np.array([age]))[:, 0]
     rate = float(lives.weight @ node_rates)
     saving = 1.0 - rate / run_rate

@@ -9,7 +9,7 @@ from datetime import datetime
 
 from fleet.records.history import History
 from fleet.records.ledger import Fitment, Plate, Purchase, StockMove
-from fleet.records.set_up import Lot, PartType, Revision
+from fleet.records.set_up import Lot, Revision
 
 
 @dataclass(frozen=True)
@@ -81,16 +81,28 @@ def _on_hand(moves: list[_Move]) -> int:
     return max(on_hand, 0)
 
 
-def on_order(history: History) -> dict[str, int]:
-    """Parts of each type that were ordered and have not come."""
+@dataclass(frozen=True)
+class OpenOrder:
+    """Parts that were ordered and have not come yet, and when they are due."""
+
+    part_type: str
+    code: str
+    quantity: int
+    due_at: datetime
+
+
+def open_orders(history: History) -> list[OpenOrder]:
+    """What was ordered and has not come, the first due first."""
     received: dict[str, int] = defaultdict(int)
     for move in history.of(StockMove).values():
         if move.purchase is not None and move.reason == "received":
             received[move.purchase] += move.quantity
-    open_parts: dict[str, int] = dict.fromkeys(history.of(PartType), 0)
-    for purchase in history.of(Purchase).values():
-        open_parts[purchase.part_type] += max(purchase.quantity - received[purchase.record_id], 0)
-    return open_parts
+    orders = [
+        OpenOrder(purchase.part_type, purchase.code, purchase.quantity - received[purchase.record_id], purchase.due_at)
+        for purchase in history.of(Purchase).values()
+        if purchase.quantity > received[purchase.record_id]
+    ]
+    return sorted(orders, key=lambda order: order.due_at)
 
 
 def on_printers(history: History) -> dict[str, int]:

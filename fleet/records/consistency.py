@@ -81,10 +81,13 @@ def _dangling_references(history: History) -> Iterator[Problem]:
                     yield Problem(entry.record_id, f"its {name} names no {kind.replace('_', ' ')} of this book.")
 
 
+_TWO_SETTINGS = "the book has its settings already; leave settings.csv out, or make the book with 'new --bare'."
+
+
 def _settings(history: History, _: Whereabouts) -> Iterator[Problem]:
     for number, settings in enumerate(history.of(Settings).values()):
         if number:
-            yield Problem(settings.record_id, "the book has its settings already; keep one row.")
+            yield Problem(settings.record_id, _TWO_SETTINGS)
         try:
             ZoneInfo(settings.zone)
         except (ZoneInfoNotFoundError, ValueError, OSError):
@@ -224,8 +227,8 @@ def _overfull_places(history: History, whereabouts: Whereabouts) -> Iterator[Pro
                 where = f"{slot.code} place {place}" if slot.count > 1 else slot.code
                 yield Problem(
                     later.fitment.record_id,
-                    f"{where} of module {unit.code} still held a part fitted {_clock(earlier.fitment.happened_at)}; "
-                    "log its removal first.",
+                    f"{where} of module {unit.code} still held a part fitted {_clock(earlier.fitment.happened_at)} "
+                    f"when one was fitted {_clock(later.fitment.happened_at)}; log its removal, or check the times.",
                 )
 
 

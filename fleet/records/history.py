@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import sys
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from datetime import datetime, tzinfo
@@ -97,7 +98,8 @@ def _by_id(held: list[Record]) -> dict[str, Record]:
 
 
 def _order_of_time(entry: Record) -> tuple[datetime, int]:
+    """By moment and sequence; set-up by when it came to hold, then by when it was entered, what is new last."""
     if isinstance(entry, LedgerRecord):
         return (entry.happened_at, entry.sequence)
     assert isinstance(entry, SetUpRecord)
-    return (entry.valid_from or EARLIEST, 0)
+    return (entry.valid_from or EARLIEST, sys.maxsize if entry.stamp is None else entry.stamp.write_number)

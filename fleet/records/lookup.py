@@ -64,6 +64,9 @@ def _find(what: str, code: str, held: Iterable[_C]) -> _C:
     by_code = {entry.code: entry for entry in held}
     if code in by_code:
         return by_code[code]
+    like = [entry for entry in by_code.values() if entry.code.casefold() == code.casefold()]
+    if len(like) == 1:
+        return like[0]
     near = difflib.get_close_matches(code, by_code, 1)
     if near:
         hint = f"did you mean {near[0]}?"

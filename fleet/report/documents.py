@@ -49,6 +49,7 @@ def odds_document(read_out: ReadOut) -> Document:
     session = read_out.next_session
     return {
         **_head(read_out.history, ODDS_CAUTION),
+        "cautions": list(read_out.cautions),
         "fleet": {"finishes": _chance(session.fleet)},
         "robots": [_robot(robot) for robot in session.robots],
     }
@@ -63,6 +64,8 @@ def _robot(robot: RobotOutlook) -> Document:
         "finishes": _chance(robot.finishes),
         "mostly_assumption": robot.mostly_assumption,
         "failures_seen": robot.failures_seen,
+        "ages_assumed": robot.ages_assumed,
+        "parts": robot.parts,
         "joints": [_joint(joint) for joint in robot.joints],
     }
 
@@ -94,6 +97,7 @@ def spares_document(read_out: ReadOut) -> Document:
     """`parts`: on_hand, on_order, needed, short, chance_enough, expected, short_from_week, weeks, lots."""
     return {
         **_head(read_out.history, GENERAL_CAUTION),
+        "cautions": list(read_out.cautions),
         "target": read_out.question.target,
         "parts": [_spare(spare) for spare in read_out.spares],
     }
@@ -108,6 +112,9 @@ def _spare(spare: SpareNeed) -> Document:
         "waiting": spare.waiting,
         "on_hand": spare.on_hand,
         "on_order": spare.on_order,
+        "orders": [
+            {"order": order.code, "quantity": order.quantity, "due": order.due_at.isoformat()} for order in spare.orders
+        ],
         "printing": spare.printing,
         "set_aside": spare.set_aside,
         "needed": spare.needed,
@@ -185,6 +192,8 @@ def lives_document(read_out: ReadOut) -> Document:
                     "verdict": replace.verdict,
                     "age_hours": _number(replace.age),
                     "saving": round(replace.saving, 4),
+                    "saving_low": round(replace.saving_low, 4),
+                    "saving_high": round(replace.saving_high, 4),
                 },
                 "modes": [
                     {

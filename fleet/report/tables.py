@@ -12,10 +12,13 @@ from rich.console import Console, ConsoleOptions, Group, RenderableType, RenderR
 from rich.table import Table
 from rich.text import Text
 
+from fleet.forecasts.next_session import RobotOutlook
 from fleet.pipeline import ReadOut
 from fleet.plans.spare_list import SpareNeed
+from fleet.records.history import History
+from fleet.records.set_up import Robot
 from fleet.report.documents import GENERAL_CAUTION, ODDS_CAUTION
-from fleet.report.wording import capital, chance, count, day, figure, joined, moment_text, percent, span
+from fleet.report.wording import capital, chance, count, day, figure, joined, moment_text, percent, saved, span
 
 MOST_JOINTS = 3
 _LEAST_TEXT = 24  # a column of text may be folded to this width before others are left out
@@ -78,7 +81,7 @@ def odds_table(read_out: ReadOut) -> RenderableType:
     """Robots before their next session: held first, then lowest odds first."""
     session = read_out.next_session
     if not session.robots:
-        return _sentence("No robots yet: import your set-up with 'wearbook import FOLDER'.")
+        return _sentence(_no_robots(read_out.history))
     rows = []
     for robot in session.robots:
         joints = [f"{j.label} {percent(j.stops.mean)} % ({j.word})" for j in robot.joints[:MOST_JOINTS]]
@@ -87,15 +90,29 @@ def odds_table(read_out: ReadOut) -> RenderableType:
         elif robot.finishes is None:
             rows.append((robot.code, "", "no parts with a known life yet: record what is fitted"))
         else:
-            note = f" [mostly assumption: {robot.failures_seen} failures seen]" if robot.mostly_assumption else ""
-            rows.append((robot.code, chance(robot.finishes), f"{joined(joints)}{note}"))
+            rows.append((robot.code, chance(robot.finishes), f"{joined(joints)}{_doubts(robot)}"))
     lines: list[RenderableType] = [_Listing("Odds of finishing the next session without a stop", _ODDS_COLUMNS, rows)]
     if session.fleet is not None:
         lines.append(_sentence(f"All that are not held finish: {chance(session.fleet)}."))
+    lines += [_sentence(said) for said in read_out.cautions]
     lines.append(
         _caution(f"In brackets: how well the chance itself is known (8 times in 10). {ODDS_CAUTION.capitalize()}.")
     )
     return Group(*lines)
+
+
+def _no_robots(history: History) -> str:
+    joined_from = [robot.in_service_from for robot in history.of(Robot).values()]
+    if not joined_from:
+        return "No robots yet: import your set-up with 'wearbook import FOLDER'."
+    return f"No robot was in service on {history.as_of:%Y-%m-%d}; the first joined {min(joined_from):%Y-%m-%d}."
+
+
+def _doubts(robot: RobotOutlook) -> str:
+    said = [f"mostly assumption: {count(robot.failures_seen, 'failure')} seen"] if robot.mostly_assumption else []
+    if robot.ages_assumed:
+        said.append(f"age unknown, assumed, for {robot.ages_assumed} of {count(robot.parts, 'part')}")
+    return f" [{'; '.join(said)}]" if said else ""
 
 
 _ODDS_COLUMNS = (_Column("robot", text=True), _Column("finishes"), _Column("most likely to stop it", text=True))
@@ -113,6 +130,7 @@ def spares_table(read_out: ReadOut) -> RenderableType:
     lines.append(_sentence(capital(f"{joined(short)}.") if short else "Nothing is short."))
     if aside:
         lines.append(_sentence(f"Set aside, of a superseded revision or a lot kept apart: {joined(aside)}."))
+    lines += [_sentence(said) for said in read_out.cautions]
     lines.append(_caution(_SPARE_NOTE))
     return Group(*lines)
 
@@ -203,7 +221,7 @@ def lives_table(read_out: ReadOut) -> RenderableType:
         outlook, replace = read_out.outlooks[key], advice.get(key)
         said = "" if replace is None else replace.verdict
         if replace is not None and replace.verdict == "replace at age":
-            said = f"replace at {figure(replace.age)} h (saves {percent(replace.saving)} %)"
+            said = f"at {figure(replace.age)} h, saves {saved(replace)}"
         rows.append(
             (
                 life.label + (" (mostly assumption)" if life.mostly_assumption else ""),

@@ -77,6 +77,28 @@ def span(low: float, middle: float, high: float, unit: str = "") -> str:
     return f"{figure(middle)}{gap}{unit} ({figure(low)}–{figure(high)})"
 
 
+class Saving(Protocol):
+    """A share saved, and the range in which it is known; below 0 where it would cost."""
+
+    @property
+    def saving(self) -> float:
+        """The share."""
+
+    @property
+    def saving_low(self) -> float:
+        """Lower end of its range."""
+
+    @property
+    def saving_high(self) -> float:
+        """Upper end of its range."""
+
+
+def saved(value: Saving) -> str:
+    """`16 % (−4 to 29)`, with a true minus."""
+    low, high = (f"{share * 100:.0f}".replace("-", "−") for share in (value.saving_low, value.saving_high))
+    return f"{percent(value.saving)}{NO_BREAK}% ({low} to {high})"
+
+
 def joined(words: Sequence[str], last: str = "and") -> str:
     """`a`, `a and b`, `a, b and c`."""
     if len(words) < 2:

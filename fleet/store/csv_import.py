@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections import Counter
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass, field, replace
-from datetime import UTC, datetime, tzinfo
+from datetime import UTC, datetime, timedelta, tzinfo
 from pathlib import Path
 from typing import Any
 from zoneinfo import ZoneInfo, ZoneInfoNotFoundError
@@ -18,6 +18,7 @@ from fleet.records.ledger import (
     Failure,
     Fitment,
     Hold,
+    LedgerRecord,
     Placement,
     Plate,
     Purchase,
@@ -95,6 +96,7 @@ def import_folder(
         If the folder is not there or holds no CSV files.
     """
     reading = _read(book, folder, progress)
+    _refuse_the_future(reading, entry.entered_at)
     if reading.problems:
         raise ImportProblems(reading.problems)
     if dry_run:
@@ -107,6 +109,14 @@ def import_folder(
         if progress is not None:
             progress("checking and writing", len(reading.records))
     return _report(reading, writer.write_number)
+
+
+def _refuse_the_future(reading: _Reading, now: datetime) -> None:
+    """A ledger tells what has happened; a day of grace is for clocks and zones that were mistaken."""
+    for record in reading.records:
+        if isinstance(record, LedgerRecord) and record.happened_at > now + timedelta(days=1):
+            row = reading.sources[record.record_id]
+            reading.problems.append(f"{row.where}: happened_at is in the future; check the date.")
 
 
 def _hand_over(reading: _Reading, writer: Writer) -> None:

@@ -8,6 +8,7 @@ from datetime import datetime, timedelta
 from typing import Literal
 
 from fleet.errors import RecordError
+from fleet.records.consistency import Problem
 from fleet.records.fields import Record, with_plain_offset
 from fleet.records.history import History
 from fleet.records.ledger import BenchCheck, Failure, Fitment, Hold, Release, Removal, Session
@@ -65,22 +66,20 @@ def log_session(book: Book, session: SessionEntry, now: datetime, entered_by: st
 
     A failure that stopped the robot happened at the session's end; spares are fitted after it.
     """
-    ended_at = with_plain_offset(session.ended_at or now)
-    _refuse_the_future(ended_at, now)
+    _refuse_the_future(session.ended_at or now, now)
     if not session.hours >= 0 or session.hours > 24 * 31:
         raise RecordError(f"hours is {session.hours:g}; a session has from 0 to 744 hours.")
     with write(book, Entry(now, entered_by, "session", draft)) as writer:
         robot = _robot(writer.history, session.robot)
+        ended_at = with_plain_offset(session.ended_at or now.astimezone(writer.history.zone))
         sentence = _session_sentence(robot, session, ended_at, now)
         if writer.written_before is not None:
             return Receipt(writer.written_before, sentence, already=True)
         run_seconds = round(session.hours * 3600)
         session_id = new_record_id()
-        records = [
-            record
-            for number, part in enumerate(session.parts)
-            for record in _part_records(writer, part, ended_at, session_id, number)
-        ]
+        records: list[Record] = []
+        for number, part in enumerate(session.parts):
+            records += _part_records(writer, part, ended_at, session_id, records, number)
         stopped = any(isinstance(record, Failure) and record.finding == "stopped" for record in records)
         outcome = "stopped" if stopped else "broken off" if session.broken_off else "finished"
         logged = Session(
@@ -262,6 +261,12 @@ def receipt_of(book: Book, draft: str) -> Receipt | None:
     return None if found is None else Receipt(found, "", already=True)
 
 
+def joints_held(history: History, robot: Robot) -> list[Position]:
+    """Joints of a robot whose module somebody holds."""
+    held = [position for position in history.of(Position).values() if position.robot == robot.record_id]
+    return [position for position in held if open_hold_on(history, robot, position) is not None]
+
+
 def undo(book: Book, write_number: int, now: datetime, entered_by: str, reason: str = "undone") -> Receipt:
     """Take back everything that one write brought in; the records stay in the book as withdrawn."""
     with write(book, Entry(now, entered_by, f"undo of write {write_number}")) as writer:
@@ -272,8 +277,24 @@ def undo(book: Book, write_number: int, now: datetime, entered_by: str, reason: 
             raise RecordError(f"Nothing of write {write_number} is left to undo.")
         for record_id in still_there:
             writer.withdraw(record_id, reason)
-        writer.explain = lambda _: RecordError("Later entries build on that one: undo those first.")
+        writer.explain = lambda problems: RecordError(_built_upon(writer.history, problems))
     return Receipt(writer.write_number, f"Undone: {len(still_there)} records of write {write_number} taken back.")
+
+
+def _built_upon(history: History, problems: Sequence[Problem]) -> str:
+    """Which later writes need what is to be undone."""
+    found = {problem.record_id for problem in problems}
+    stamps = [entry.stamp for held in history.rows.values() for entry in held.values() if entry.record_id in found]
+    later = sorted({stamp.write_number for stamp in stamps if stamp is not None}, reverse=True)
+    return f"Later entries build on that one: undo {_numbered(later)} first, the last of them before the others."
+
+
+def _numbered(numbers: Sequence[int]) -> str:
+    """`write 7`, `writes 9 and 7`."""
+    if not numbers:
+        return "those"
+    words = [str(number) for number in numbers]
+    return f"write {words[0]}" if len(words) == 1 else f"writes {', '.join(words[:-1])} and {words[-1]}"
 
 
 def _add(writer: Writer, records: Sequence[Record]) -> None:
@@ -321,15 +342,23 @@ def _part_in(history: History, whereabouts: Whereabouts, part: PartEntry, moment
 
 
 def _part_records(
-    writer: Writer, part: PartEntry, moment: datetime, session: str | None, number: int = 0
+    writer: Writer,
+    part: PartEntry,
+    moment: datetime,
+    session: str | None,
+    before: Sequence[Record] = (),
+    number: int = 0,
 ) -> list[Record]:
     """What happened to one part, the `number`th of its write: the sequence keeps the order in which it was told."""
     whereabouts = whereabouts_of(writer.history)
     found = _part_in(writer.history, whereabouts, part, moment)
     failed = part.happened != "replaced while good"
+    if not failed and whereabouts.failure_of(found) is not None:
+        raise RecordError("That part has failed already and is not good: log the spare that was put in instead.")
     records: list[Record] = []
     if failed:
-        records.append(_failure(writer.history, part, found, moment, session, number))
+        stops = _stops(writer.history, whereabouts, part, found, before)
+        records.append(_failure(part, found, moment, session, stops, number))
     if failed and part.lot is None:
         return records
     records.append(_removal(found.fitment, part.place, part.happened, moment, number))
@@ -338,14 +367,26 @@ def _part_records(
     return records
 
 
+def _stops(
+    history: History, whereabouts: Whereabouts, part: PartEntry, found: FittedPart, before: Sequence[Record]
+) -> bool:
+    """Whether this failure stops the robot: with those that had failed before it, too few of the set are left."""
+    stops_at = history.one(Slot, part.slot).stops_at
+    unit = found.fitment.unit
+    in_set = [held[-1] for (at, slot, _), held in whereabouts.parts.items() if (at, slot) == (unit, part.slot)]
+    gone = sum(p.removal is None and whereabouts.failure_of(p) is not None for p in in_set)
+    of_set = {p.fitment.record_id for p in in_set}
+    gone += sum(isinstance(record, Failure) and record.fitment in of_set for record in before)
+    return stops_at is not None and gone + 1 >= stops_at
+
+
 def _failure(
-    history: History, part: PartEntry, found: FittedPart, moment: datetime, session: str | None, number: int
+    part: PartEntry, found: FittedPart, moment: datetime, session: str | None, stops: bool, number: int
 ) -> Failure:
     if part.mode is None:
         raise RecordError("Say how it failed: choose what was seen.")
-    stops = history.one(Slot, part.slot).stops_at
     # One of several that the robot can do without is past its limit, but did not stop anything.
-    finding = "found worn" if part.happened == "found worn" else "stopped" if stops == 1 else "over its limit"
+    finding = "found worn" if part.happened == "found worn" else "stopped" if stops else "over its limit"
     return Failure(
         record_id=new_record_id(),
         happened_at=moment,

@@ -88,7 +88,7 @@ WRONG = {
     "control character": (("log", "session", "R1", "--hours", "1", "--note", "a\x07b"), "a control character"),
     "nobody entered it": (("log", "session", "R1", "--hours", "1", "--by", ""), "'--by': it is empty"),
     "broken letters": (("log", "session", "R1", "--hours", "1", "--by", "\udcff"), "a control character"),
-    "nothing held": (("log", "release", "R1", "--why", "ok"), "R1 is not held by anyone"),
+    "nothing held": (("log", "release", "R1", "--why", "ok"), "R1 itself is not held by anyone"),
     "mode without part": (("log", "check", "R1", "hip", "--mode", "worn"), "--mode needs --part"),
     "undo of nothing": (("log", "undo", "99"), "Nothing of write 99 is left to undo"),
     "undo of no number": (("log", "undo", "last"), "'last' is not a valid integer"),

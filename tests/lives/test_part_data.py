@@ -88,7 +88,7 @@ def test_found_worn_at_120_h_and_good_at_80_failed_in_between() -> None:
         ({"mode": "disc: worn"}, 80.0),
         ({"slot": "slot-disc", "mode": "disc: split"}, 0.0),  # could not have shown wear
         ({"slot": "slot-pins"}, 0.0),  # another part
-        ({"verdict": "doubtful"}, 0.0),  # not good
+        ({"verdict": "doubtful"}, 118.0),  # not good: as if none was noted, from the last session on
     ],
 )
 def test_a_look_counts_only_if_it_could_have_shown_that_mode(look: dict[str, str], last_good: float) -> None:
@@ -171,7 +171,7 @@ def test_a_set_is_one_row_with_its_count_and_a_failed_pin_a_row_of_its_own() -> 
     broke = failure("U1 pins", "pin: worn flat", last.ended_at, "found worn", place=3, record_id="broke")
     out = removal("U1 pins", last.ended_at, "found worn", place=3)
     data = mode(life_of(history_with(*RUNS, last, broke, out), PIN), "worn flat").unfit
-    assert rows(data) == [(0.0, 201.0, 0.0, 1.0), (201.0, INF, 0.0, 12.0), (201.0, INF, 0.0, 13.0)]
+    assert rows(data) == [(200.0, 201.0, 0.0, 1.0), (201.0, INF, 0.0, 12.0), (201.0, INF, 0.0, 13.0)]
     assert (data.failures, data.suspensions) == (1.0, 25.0)
 
 

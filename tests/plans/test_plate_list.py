@@ -32,6 +32,7 @@ SPOOLS = [
 PRESENT = [Presence(record_id=name, weekday=name, start_minute=8 * 60, end_minute=18 * 60) for name in WEEKDAYS]
 WORKSHOP: list[Record] = [*PRINTERS, *SPOOLS, *PRESENT]
 NOW = day(30, 12)
+NONE_SHORT = (0,) * 8
 
 
 def plate(started: int, good: int | None, moment: datetime = NOW - timedelta(days=3), printer: str = "PR-1") -> Plate:
@@ -60,37 +61,44 @@ def planned(*records: Record, target: float = 0.9, **changed: object) -> tuple[P
 
 def test_printed_parts_that_are_short_are_wanted_and_bought_ones_are_not() -> None:
     found, spares = planned(*WORKSHOP)
-    assert [need.part for need in found.needs] == ["disc"]
+    assert {need.part for need in found.needs} == {"disc"}
     assert spares["pin"].short > 0
-    assert found.needs[0].good_wanted == max(spares["disc"].short, spares["disc"].short_by_end)
-    assert found.needs[0].revision == "B"
+    assert sum(need.good_wanted for need in found.needs) == max(spares["disc"].short, spares["disc"].short_by_end)
+    assert {need.revision for need in found.needs} == {"B"}
 
 
-def test_what_is_on_the_printers_already_is_not_wanted_again() -> None:
-    found, spares = planned(*WORKSHOP, plate(2, None, NOW - timedelta(hours=1)))
-    assert spares["disc"].printing == 2
-    assert found.needs[0].good_wanted == max(spares["disc"].short, spares["disc"].short_by_end) - 2
+def test_what_is_on_the_printers_counts_as_far_as_it_is_likely_to_come_out_good() -> None:
+    seen, running = plate(10, 7), plate(6, None, NOW - timedelta(hours=1))
+    found, spares = planned(*WORKSHOP, seen, running, short=10, short_by_week=(10,) * 8)
+    assert spares["disc"].printing == 6
+    assert [need.good_wanted for need in found.needs] == [6], "7 of 10 came out, so 4 of these 6"
     assert planned(*WORKSHOP, printing=500)[0].needs == ()
 
 
 def test_nothing_short_prints_nothing() -> None:
-    found, _ = planned(*WORKSHOP, short=0, short_by_end=0)
+    found, _ = planned(*WORKSHOP, short=0, short_by_week=NONE_SHORT)
     assert (found.needs, found.plan.plates, found.plan.shortages) == ((), (), ())
 
 
 def test_story_14_the_yield_of_the_plates_so_far_decides_how_many_to_start() -> None:
     seen = [plate(10, 9), plate(10, 8, printer="PR-2")]
-    found, _ = planned(*WORKSHOP, *seen, short=12, short_by_end=0)
+    found, _ = planned(*WORKSHOP, *seen, short=12, short_by_week=NONE_SHORT)
     need = found.needs[0]
     assert (need.good, need.started, need.good_wanted) == (17, 20, 12)
     assert sum(printed.count for printed in found.plan.plates) == 18 == starts_for(12, 0.9, 17, 20)
     assert all(printed.count <= 6 for printed in found.plan.plates)
 
 
-@pytest.mark.parametrize(("week", "days"), [(1, 1), (2, 7), (5, 28), (None, 12)])
-def test_due_before_the_first_week_that_may_not_last_or_when_it_could_be_restocked(week: int | None, days: int) -> None:
-    found, _ = planned(*WORKSHOP, short_from_week=week, short=3)
-    assert found.needs[0].due - NOW == timedelta(days=days)
+def test_what_is_short_first_is_due_before_its_week_and_the_rest_before_the_week_it_is_wanted_in() -> None:
+    found, _ = planned(*WORKSHOP, short=3, short_by_week=(0, 3, 3, 3, 5, 8, 9, 9))
+    assert [(need.good_wanted, (need.due - NOW).days) for need in found.needs] == [(3, 7), (6, 28)]
+
+
+def test_what_is_short_now_is_due_tomorrow_and_what_no_week_shows_when_it_could_be_restocked() -> None:
+    found, _ = planned(*WORKSHOP, short=2, short_by_week=(2, 2, 2, 2, 2, 2, 2, 2))
+    assert [(need.good_wanted, (need.due - NOW).days) for need in found.needs] == [(2, 1)]
+    found, spares = planned(*WORKSHOP, short=2, short_by_week=NONE_SHORT)
+    assert [(need.due - NOW).days for need in found.needs] == [spares["disc"].days_until_restocked]
 
 
 def test_only_printers_with_the_nozzle_are_used_and_people_change_the_plates() -> None:
@@ -134,7 +142,7 @@ def test_without_printers_spools_or_people_a_sentence_says_what_cannot_be_printe
 
 
 def test_a_target_that_no_number_of_prints_meets_is_said_and_stops_nothing_else() -> None:
-    found, _ = planned(*WORKSHOP, target=0.9999, short=3)
+    found, _ = planned(*WORKSHOP, plate(6, 0), target=0.9999, short=3, short_by_week=NONE_SHORT)
     assert found.plan.plates == ()
     assert len(found.plan.shortages) == 1
     assert found.plan.shortages[0].startswith("disc (B): No number of starts")
@@ -142,7 +150,10 @@ def test_a_target_that_no_number_of_prints_meets_is_said_and_stops_nothing_else(
 
 def test_a_better_yield_never_starts_more() -> None:
     starts = [
-        sum(printed.count for printed in planned(*WORKSHOP, plate(40, good), short=10, short_by_end=0)[0].plan.plates)
+        sum(
+            printed.count
+            for printed in planned(*WORKSHOP, plate(40, good), short=10, short_by_week=NONE_SHORT)[0].plan.plates
+        )
         for good in (20, 30, 36, 40)
     ]
     assert starts == sorted(starts, reverse=True)

@@ -69,7 +69,8 @@ def test_short_is_what_is_missing_beyond_the_shelf_and_the_orders() -> None:
     assert nothing.short == nothing.needed > 0
     some = line("pin", received("P-1", 3), ORDERED)
     assert (some.on_hand, some.on_order) == (3, 6)
-    assert some.short == max(some.needed - 9, 0)
+    assert some.short == max(some.needed - 3, 0), "what is due only later does not help until then"
+    assert len(some.orders) == 1 and some.orders[0].quantity == 6
     assert some.needed == nothing.needed
     plenty = line("pin", received("P-1", 200))
     assert (plenty.short, plenty.short_by_end, plenty.short_from_week) == (0, 0, None)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Sequence
 from datetime import datetime, timedelta
 
@@ -9,9 +10,9 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from fleet.plans.stock import LotStock, on_order, on_printers, stock_by_lot
+from fleet.plans.stock import LotStock, on_printers, open_orders, stock_by_lot
 from fleet.records.fields import Record
-from fleet.records.history import history_of
+from fleet.records.history import History, history_of
 from fleet.records.ledger import Fitment, Plate, Purchase, StockMove
 from fleet.records.set_up import Lot
 from tests.books import END, day, fitment, history_with, new_id, removal
@@ -114,10 +115,10 @@ def test_superseded_revisions_and_lots_kept_apart_are_marked() -> None:
 def test_on_order_is_what_was_ordered_and_has_not_come() -> None:
     first, second = purchase(50), purchase(30)
     came = [move("received", 20, day(5), lot="P-1", purchase=first.record_id)]
-    assert on_order(history_with(first, second, *came))["pin"] == 60
+    assert ordered(history_with(first, second, *came))["pin"] == 60
     more = move("received", 45, day(6), lot="P-1", purchase=first.record_id)
-    assert on_order(history_with(first, second, *came, more))["pin"] == 30, "what came beyond one order closes no other"
-    assert on_order(history_with())["pin"] == 0
+    assert ordered(history_with(first, second, *came, more))["pin"] == 30, "what came beyond one order closes no other"
+    assert ordered(history_with())["pin"] == 0
 
 
 def test_on_printers_are_the_parts_started_on_plates_not_done() -> None:
@@ -184,3 +185,11 @@ def test_the_order_of_entry_changes_nothing(order: int) -> None:
         fitment("U1", "disc", day(8), lot="D-2"),
     ]
     assert stock(*records[::order]).on_hand == 2
+
+
+def ordered(history: History) -> Counter[str]:
+    """Parts of each type that were ordered and have not come."""
+    total: Counter[str] = Counter()
+    for order in open_orders(history):
+        total[order.part_type] += order.quantity
+    return total

@@ -22,9 +22,9 @@ from fleet.store.csv_import import ImportReport, import_folder
 from fleet.store.csv_rows import columns_of_kind
 from fleet.store.reading import read_history
 from fleet.store.writing import Entry
-from tests.books import END, FITTED, NOW, Cells, add, day, imported_book, session, tiny_book, tiny_files, write_files
+from tests.books import END, FITTED, Cells, add, day, imported_book, session, tiny_book, tiny_files, write_files
 
-ENTRY = Entry(NOW, "bench", "import")
+ENTRY = Entry(END, "bench", "import")
 
 
 @pytest.fixture

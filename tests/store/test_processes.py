@@ -17,7 +17,7 @@ from fleet.store.book import Book, create_book, open_book
 from fleet.store.csv_import import import_folder
 from fleet.store.reading import read_history
 from fleet.store.writing import Entry
-from tests.books import END, FITTED, Cells, tiny_book, tiny_files, write_files
+from tests.books import END, Cells, tiny_book, tiny_files, write_files
 
 ROOT = Path(__file__).resolve().parents[2]
 LOGGED = 40
@@ -90,7 +90,7 @@ from sqlalchemy import event
 from fleet.store.book import open_book
 from fleet.store.csv_import import import_folder
 from fleet.store.writing import Entry
-from tests.books import FITTED
+from tests.books import END
 
 def die():
     print("dying", flush=True)
@@ -115,7 +115,7 @@ def progress(stage, count):
 event.listen(book.engine, "before_cursor_execute", before_statement)
 if when == "about to commit":
     event.listen(book.engine, "commit", lambda connection: die() if inserted else None)
-import_folder(book, Path(folder), Entry(FITTED, "bench", "import"), progress=progress)
+import_folder(book, Path(folder), Entry(END, "bench", "import"), progress=progress)
 """
 SESSIONS: list[Cells] = [
     {
@@ -146,4 +146,4 @@ def test_an_import_that_is_killed_leaves_the_book_as_it_was(tmp_path: Path, when
         assert read_history(book, END).rows == {}
         assert sound(book)
         # And the book still takes the same files.
-        assert import_folder(book, folder, Entry(FITTED, "bench", "import")).counts["session"] == len(SESSIONS)
+        assert import_folder(book, folder, Entry(END, "bench", "import")).counts["session"] == len(SESSIONS)
