@@ -79,8 +79,14 @@ def number(value: Chance) -> Html:
 
 def assumption(failures_seen: int) -> Html:
     """The dashed words beside a number that rests mostly on an assumption."""
-    seen = "1 failure seen" if failures_seen == 1 else f"{failures_seen} failures seen"
-    return element("span", f"mostly assumption: {seen}", class_="assumption")
+    return doubt("1 failure seen" if failures_seen == 1 else f"{failures_seen} failures seen", True)
+
+
+def doubt(why: str, mostly_assumption: bool) -> Html:
+    """Why a number is less sure than it looks; dashed where it rests mostly on an assumption."""
+    if not mostly_assumption:
+        return element("span", why, class_="soft small")
+    return element("span", f"mostly assumption: {why}", class_="assumption")
 
 
 def track(value: Chance, mostly_assumption: bool = False) -> Html:

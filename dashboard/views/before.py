@@ -15,6 +15,7 @@ from dashboard.marks import (
     assumption,
     caution,
     cautions,
+    doubt,
     element,
     folded,
     html,
@@ -133,21 +134,21 @@ def _row(robot: RobotOutlook, hours_said: str | None) -> list[str | Html]:
     first = joined_html([link(robot.code, address("after", robot=robot.code)), " ", name])
     why = link(number(robot.finishes), address("before", hours=hours_said, why=robot.code))
     under = element("div", drawn, class_="phone-only")
-    said = element("div", assumption(robot.failures_seen)) if robot.mostly_assumption else ""
+    said = element("div", _doubt(robot)) if robot.mostly_assumption or robot.ages_assumed else ""
     top = robot.joints[0] if robot.joints else None
     return [
         first,
-        joined_html([why, under, said, _ages_assumed(robot)]),
+        joined_html([why, under, said]),
         element("span", drawn, class_="wide-only"),
         "" if top is None else _joint(robot, top),
     ]
 
 
-def _ages_assumed(robot: RobotOutlook) -> Html:
+def _doubt(robot: RobotOutlook) -> Html:
+    """Why these odds are less sure than they look: ages that nobody knows, or few failures."""
     if not robot.ages_assumed:
-        return Html("")
-    words = f"age unknown, assumed, for {robot.ages_assumed:,} of {count(robot.parts, 'part')}"
-    return element("div", words, class_="soft small")
+        return assumption(robot.failures_seen)
+    return doubt(f"age unknown for {robot.ages_assumed:,} of {count(robot.parts, 'part')}", robot.mostly_assumption)
 
 
 def _joint(robot: RobotOutlook, joint: JointOutlook) -> Html:

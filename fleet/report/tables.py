@@ -109,10 +109,11 @@ def _no_robots(history: History) -> str:
 
 
 def _doubts(robot: RobotOutlook) -> str:
-    said = [f"mostly assumption: {count(robot.failures_seen, 'failure')} seen"] if robot.mostly_assumption else []
-    if robot.ages_assumed:
-        said.append(f"age unknown, assumed, for {robot.ages_assumed} of {count(robot.parts, 'part')}")
-    return f" [{'; '.join(said)}]" if said else ""
+    if not robot.mostly_assumption and not robot.ages_assumed:
+        return ""
+    seen = f"{count(robot.failures_seen, 'failure')} seen"
+    why = f"age unknown for {robot.ages_assumed} of {count(robot.parts, 'part')}" if robot.ages_assumed else seen
+    return f" [{'mostly assumption: ' if robot.mostly_assumption else ''}{why}]"
 
 
 _ODDS_COLUMNS = (_Column("robot", text=True), _Column("finishes"), _Column("most likely to stop it", text=True))

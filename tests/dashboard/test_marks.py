@@ -13,6 +13,7 @@ from dashboard.marks import (
     assumption,
     caution,
     cautions,
+    doubt,
     element,
     joint_tile,
     limb_tiles,
@@ -82,6 +83,8 @@ def test_a_number_that_is_mostly_assumption_is_drawn_hollow_and_says_so() -> Non
     assert "assumed" in track(odds, mostly_assumption=True)
     assert "assumed" not in track(odds)
     assert "mostly assumption: 0 failures seen" in assumption(0)
+    assert "mostly assumption: age unknown" in doubt("age unknown", True)
+    assert "mostly" not in doubt("age unknown for 2 of 40 parts", False)
     assert "1 failure seen" in assumption(1)
 
 
