@@ -139,8 +139,6 @@ MODES = (
     PlannedMode("arm bearing", "play", "play over 0.1 mm", "wear", 1.0),
 )
 
-PART_BY_CODE = {part.code: part for part in PARTS}
-
 
 def slots_of(unit_design: str) -> tuple[PlannedSlot, ...]:
     """The slots of a joint design, in order."""

@@ -94,7 +94,7 @@ def read_out(history: History, question: Question) -> ReadOut:
         next_session=next_session(history, ages, slots, lives, stop, plans),
         demands=demands,
         spares=spares,
-        plates=plate_list(history, spares, demands, question.target),
+        plates=plate_list(history, spares, question.target),
         replacements=replacement_list(history, lives, in_hours),
         cautions=unplanned_robots(history, plans),
     )
@@ -115,7 +115,7 @@ def look_back(now: History, months: Sequence[History]) -> tuple[MonthForecast, .
         ages = ages_of(then)
         lives = fit_part_lives(then, part_data(then, ages))
         slots = slots_now(then, ages, lives)
-        found += month_forecasts(then, now, end, ages, slots, _draws(lives, "unfit", MOST_DRAWS), ages_now)
+        found += month_forecasts(then, now, end, slots, _draws(lives, "unfit", MOST_DRAWS), ages_now)
     return tuple(found)
 
 

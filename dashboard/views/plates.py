@@ -41,7 +41,9 @@ def draw() -> None:
     plan = found.plates.plan
     lead(_sentence(found))
     runs = runs_of(found)
-    show_linked(_late(found), *(caution("Cannot print", said) for said in plan.shortages), key="plates-late")
+    show_linked(
+        _late(found), _judged(found), *(caution("Cannot print", said) for said in plan.shortages), key="plates-late"
+    )
     if runs:
         show(element("h2", "The week of the printers", class_="wide-only"), _week(found, runs))
     show(_now(found), _changes(found, changes_of(found)), _spools(found), PRINTING)
@@ -62,6 +64,11 @@ def _sentence(found: ReadOut) -> str:
     return (
         f"{count(len(plates), 'plate')}, {total:.0f}{NO_BREAK}h of printing, {figure(grams)}{NO_BREAK}g; done {last}."
     )
+
+
+def _judged(found: ReadOut) -> Html:
+    """Parts whose yield nobody has seen yet."""
+    return cautions([caution("Yield", sentence) for sentence in found.plates.judged])
 
 
 def _late(found: ReadOut) -> Html:

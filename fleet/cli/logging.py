@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import dataclass
 from datetime import datetime, timedelta
 from typing import TYPE_CHECKING, Literal
 
@@ -96,8 +97,8 @@ def log_failure_command(
     entered_by: str,
 ) -> None:
     """PART of JOINT of ROBOT failed (at the end of the robot's last session, unless --at says otherwise)."""
-    happened: Literal["failed", "found worn"] = "found worn" if found_worn else "failed"
-    _log_part(where, entered_by, (robot, joint, part), place, happened, mode, spare, written_at, cause)
+    told = _Told(robot, joint, part, place, spare, written_at)
+    _log_part(where, entered_by, told, "found worn" if found_worn else "failed", mode, cause)
 
 
 @log_command.command("swap")
@@ -120,7 +121,7 @@ def log_swap_command(
     entered_by: str,
 ) -> None:
     """PART of JOINT of ROBOT was replaced while still good."""
-    _log_part(where, entered_by, (robot, joint, part), place, "replaced while good", None, spare, written_at)
+    _log_part(where, entered_by, _Told(robot, joint, part, place, spare, written_at), "replaced while good")
 
 
 @log_command.command("spare")
@@ -143,64 +144,85 @@ def log_spare_command(
     entered_by: str,
 ) -> None:
     """A spare was put in for PART of JOINT of ROBOT, which had failed earlier or was missing."""
-    from fleet.records.lookup import find_lot, find_position, find_robot, find_slot
     from fleet.store.entries import SpareEntry, log_spare
     from fleet.store.reading import read_history
 
     with opened(where) as book:
         history = read_history(book, now())
-        position = find_position(history, find_robot(history, robot), joint)
-        slot = find_slot(history, position, part)
-        lot = find_lot(history, slot.part_type, spare).record_id
+        at = _placed(history, _Told(robot, joint, part, place, spare, written_at))
+        assert at.lot is not None
+        entry = SpareEntry(at.position.record_id, at.slot.record_id, at.lot, at.place)
         moment = _now_at_home(history) if written_at is None else parse_time("--at", written_at, history)
-        entry = SpareEntry(position.record_id, slot.record_id, lot, _place_in(slot, place))
         _say(log_spare(book, entry, moment, now(), entered_by))
-        _warn_of_spare(history, lot)
+        _warn_of_spare(history, at.lot)
 
 
-def _place_in(slot: Slot, place: int | None) -> int:
+@dataclass(frozen=True)
+class _Told:
+    """A part, its place, its spare and when, as they were typed."""
+
+    robot: str
+    joint: str
+    part: str
+    place: int | None
+    spare: str | None
+    written_at: str | None
+
+
+@dataclass(frozen=True)
+class _Placed:
+    """What was typed, found in the book; `lot` is the record id of the spare's lot."""
+
+    robot: Robot
+    position: Position
+    slot: Slot
+    place: int
+    lot: str | None
+
+
+def _placed(history: History, told: _Told) -> _Placed:
     from fleet.errors import RecordError
+    from fleet.records.lookup import find_lot, find_position, find_robot, find_slot
 
-    if slot.count > 1 and place is None:
+    robot = find_robot(history, told.robot)
+    position = find_position(history, robot, told.joint)
+    slot = find_slot(history, position, told.part)
+    if slot.count > 1 and told.place is None:
         raise RecordError(f"{slot.code} holds {slot.count} like parts: say which with --place 1 to {slot.count}.")
-    return place or 1
+    lot = None if told.spare is None else find_lot(history, slot.part_type, told.spare).record_id
+    return _Placed(robot, position, slot, told.place or 1, lot)
 
 
 def _log_part(
     where: str | None,
     entered_by: str,
-    what: tuple[str, str, str],
-    place: int | None,
+    told: _Told,
     happened: Literal["failed", "found worn", "replaced while good"],
-    mode: str | None,
-    spare: str | None,
-    written_at: str | None,
+    mode: str | None = None,
     cause: str = "unknown",
 ) -> None:
     from fleet.errors import RecordError
-    from fleet.records.lookup import find_lot, find_mode, find_position, find_robot, find_slot
+    from fleet.records.lookup import find_mode
     from fleet.records.vocabulary import CAUSES
     from fleet.store.entries import PartEntry, log_part
     from fleet.store.reading import read_history
 
     with opened(where) as book:
         history = read_history(book, now())
-        robot = find_robot(history, what[0])
-        position = find_position(history, robot, what[1])
-        slot = find_slot(history, position, what[2])
+        at = _placed(history, told)
         if cause not in CAUSES:
             raise RecordError(f"--cause {cause!r} is not one of: {', '.join(CAUSES)}.")
         part = PartEntry(
-            position=position.record_id,
-            slot=slot.record_id,
+            position=at.position.record_id,
+            slot=at.slot.record_id,
             happened=happened,
-            place=_place_in(slot, place),
-            mode=None if mode is None else find_mode(history, slot.part_type, mode).record_id,
-            lot=None if spare is None else find_lot(history, slot.part_type, spare).record_id,
+            place=at.place,
+            mode=None if mode is None else find_mode(history, at.slot.part_type, mode).record_id,
+            lot=at.lot,
             cause=cause,
         )
-        _say(log_part(book, part, _when(history, robot, written_at), now(), entered_by))
-        _warn_of_spare(history, part.lot)
+        _say(log_part(book, part, _when(history, at.robot, told.written_at), now(), entered_by))
+        _warn_of_spare(history, at.lot)
 
 
 def _now_at_home(history: History) -> datetime:

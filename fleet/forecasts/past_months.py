@@ -65,7 +65,6 @@ def month_forecasts(
     then: History,
     now: History,
     end: datetime,
-    ages_then: Ages,
     slots_then: Sequence[SlotNow],
     draws: Mapping[LifeKey, LifeDraws],
     ages_now: Ages,
@@ -76,8 +75,8 @@ def month_forecasts(
     ----------
     then, now : History
         What was known at the month's start (its `as_of`), and what is known today.
-    ages_then, slots_then, draws
-        Ages, fitted parts and lives (*unfit*) worked out from `then`.
+    slots_then, draws
+        Fitted parts and lives (*unfit*) worked out from `then`.
     ages_now : Ages
         From `now`, for the use that really happened.
     """

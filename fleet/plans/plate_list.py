@@ -3,11 +3,11 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass
 from datetime import datetime, timedelta
 
-from fleet.forecasts.part_demand import DAYS_A_WEEK, PartDemand, newest_made
+from fleet.forecasts.part_demand import DAYS_A_WEEK, newest_made
 from fleet.plans.plates import PlatePlan, PresenceWindow, PrinterNow, PrintNeed, SpoolNow, plan_plates
 from fleet.plans.spare_list import SpareNeed
 from fleet.records.history import History
@@ -26,10 +26,18 @@ class PlateList:
     needs: tuple[PrintNeed, ...]
     plan: PlatePlan
 
+    @property
+    def judged(self) -> tuple[str, ...]:
+        """A sentence for every part whose yield is a judgement, since no plate of it has been recorded."""
+        labels = dict.fromkeys(need.label for need in self.needs if need.yield_judged)
+        good, started = _UNSEEN_YIELD
+        return tuple(
+            f"No plate of {label} has been recorded: its yield is judged, as if {good} of {started} had come out good."
+            for label in labels
+        )
 
-def plate_list(
-    history: History, spares: Sequence[SpareNeed], demands: Mapping[str, PartDemand], target: float
-) -> PlateList:
+
+def plate_list(history: History, spares: Sequence[SpareNeed], target: float) -> PlateList:
     """Plates for every printed part that is short, the first due first.
 
     Parameters
@@ -73,6 +81,7 @@ def _need(history: History, spare: SpareNeed, wanted: int, due: datetime) -> Pri
         grams_per_part=part_type.mass_g,
         good=good,
         started=started,
+        yield_judged=not _finished(history, spare.part_type),
     )
 
 
@@ -97,14 +106,18 @@ def _needs(history: History, spare: SpareNeed) -> list[PrintNeed]:
 
 def _yield(history: History, part_type: str) -> tuple[int, int]:
     """Good parts and parts started on all finished plates of a part type; as judged where there is none yet."""
-    plates = [
+    plates = _finished(history, part_type)
+    if not plates:
+        return _UNSEEN_YIELD
+    return sum(plate.good or 0 for plate in plates), sum(plate.started for plate in plates)
+
+
+def _finished(history: History, part_type: str) -> list[Plate]:
+    return [
         plate
         for plate in history.of(Plate).values()
         if plate.good is not None and history.one(Lot, plate.lot).part_type == part_type
     ]
-    if not plates:
-        return _UNSEEN_YIELD
-    return sum(plate.good or 0 for plate in plates), sum(plate.started for plate in plates)
 
 
 def expected_end(history: History, plate: Plate) -> datetime:

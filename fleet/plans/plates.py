@@ -38,6 +38,8 @@ class PrintNeed:
         Supports and waste included.
     good, started : int
         Yield so far.
+    yield_judged : bool
+        `good` and `started` are a judgement, no plate of this part has been recorded.
     """
 
     part: str
@@ -53,6 +55,7 @@ class PrintNeed:
     grams_per_part: float
     good: int
     started: int
+    yield_judged: bool = False
 
 
 @dataclass(frozen=True)

@@ -1,38 +1,13 @@
-"""Demand distributions and stock come in; what to hold, and the chance of running short, goes out."""
+"""A demand distribution and a target come in; the smallest stock that meets it goes out."""
 
 from __future__ import annotations
-
-from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fleet.errors import PlanError
-from fleet.forecasts.demand import expected
 
 FloatArray = NDArray[np.float64]
-
-
-@dataclass(frozen=True)
-class SpareStock:
-    """Stock against demand over lead time and review.
-
-    Attributes
-    ----------
-    needed : int
-        Smallest stock that meets the target.
-    short : int
-        Parts to order beyond those on hand and on order.
-    chance_short : float
-        That demand exceeds what is on hand and on order.
-    expected : float
-        Expected demand.
-    """
-
-    needed: int
-    short: int
-    chance_short: float
-    expected: float
 
 
 def stock_for(demand: FloatArray, target: float) -> int:
@@ -63,36 +38,3 @@ def stock_for(demand: FloatArray, target: float) -> int:
     if enough.size == 0:
         raise PlanError(f"The demand is given only up to a chance of {float(pmf.sum()):.10f}, below {target}.")
     return int(enough[0])
-
-
-def spare_stock(demand: FloatArray, on_hand: int, on_order: int, target: float) -> SpareStock:
-    """Stock to hold against a demand, and what is missing.
-
-    Parameters
-    ----------
-    demand : array of float, shape (n,)
-        Probability of 0, 1, 2, ... over lead time and review.
-    on_hand, on_order : int
-        Usable parts, and parts that will arrive in that time.
-    target : float
-        In (0, 1).
-
-    Returns
-    -------
-    SpareStock
-
-    Raises
-    ------
-    PlanError
-        If a figure cannot be.
-    """
-    if on_hand < 0 or on_order < 0:
-        raise PlanError(f"{on_hand} parts on hand, {on_order} on order: a stock is 0 or more, mend its record.")
-    needed = stock_for(demand, target)
-    beyond = float(np.sum(demand[on_hand + on_order + 1 :]))
-    return SpareStock(
-        needed=needed,
-        short=max(0, needed - on_hand - on_order),
-        chance_short=min(beyond, 1.0),
-        expected=expected(np.asarray(demand)),
-    )

@@ -8,7 +8,7 @@ from typing import Protocol, TypeVar
 
 from fleet.errors import RecordError
 from fleet.records.history import History
-from fleet.records.set_up import Lot, PartMode, PartType, Position, Robot, Slot, UnitDesign
+from fleet.records.set_up import Lot, PartMode, PartType, Position, Robot, Slot
 
 
 class _Coded(Protocol):
@@ -53,11 +53,6 @@ def find_lot(history: History, part_type: str, code: str) -> Lot:
 def find_part_type(history: History, code: str) -> PartType:
     """The part type with this code."""
     return _find("part type", code, history.of(PartType).values())
-
-
-def find_design(history: History, code: str) -> UnitDesign:
-    """The joint design with this code."""
-    return _find("joint design", code, history.of(UnitDesign).values())
 
 
 def _find(what: str, code: str, held: Iterable[_C]) -> _C:

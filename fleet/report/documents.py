@@ -146,7 +146,7 @@ def plates_document(read_out: ReadOut) -> Document:
                 "revision": need.revision,
                 "good_wanted": need.good_wanted,
                 "due": need.due.isoformat(),
-                "yield": {"good": need.good, "started": need.started},
+                "yield": {"good": need.good, "started": need.started, "judged": need.yield_judged},
             }
             for need in plates.needs
         ],
@@ -181,6 +181,7 @@ def lives_document(read_out: ReadOut) -> Document:
                 "running": life.data.running,
                 "removed_good": life.data.suspended,
                 "left_out_age_unknown": life.data.left_out,
+                "left_out_failed_before_use": life.data.no_use,
                 "b10_hours": _age(outlook.b10),
                 "b50_hours": _age(outlook.b50),
                 "data_share": round(life.data_share, 4),

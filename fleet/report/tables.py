@@ -195,6 +195,7 @@ def plates_table(read_out: ReadOut) -> RenderableType:
     ]
     lines: list[RenderableType] = [_Listing("Print plates", _PLATE_COLUMNS, rows)] if rows else []
     lines += [_sentence(f"Cannot print: {said}") for said in plan.shortages]
+    lines += [_sentence(said) for said in read_out.plates.judged]
     lines.append(_caution(_PLATE_CAUTION))
     return Group(*lines)
 

@@ -56,7 +56,7 @@ def planned(*records: Record, target: float = 0.9, **changed: object) -> tuple[P
         replace(need, **changed) if need.code == "disc" else need  # type: ignore[arg-type]
         for need in spare_list(chain.history, demands, chain.lives, 0.9)
     ]
-    return plate_list(chain.history, spares, demands, target), {need.code: need for need in spares}
+    return plate_list(chain.history, spares, target), {need.code: need for need in spares}
 
 
 def test_printed_parts_that_are_short_are_wanted_and_bought_ones_are_not() -> None:
@@ -158,3 +158,9 @@ def test_a_better_yield_never_starts_more() -> None:
     ]
     assert starts == sorted(starts, reverse=True)
     assert starts[-1] >= 10
+
+
+def test_a_part_never_printed_says_that_its_yield_is_judged_and_one_printed_does_not() -> None:
+    never, _ = planned(*WORKSHOP, short=3, short_by_week=NONE_SHORT)
+    assert never.judged == ("No plate of disc has been recorded: its yield is judged, as if 4 of 4 had come out good.",)
+    assert planned(*WORKSHOP, plate(10, 8), short=30)[0].judged == ()

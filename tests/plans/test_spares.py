@@ -7,7 +7,7 @@ import pytest
 
 from fleet.errors import PlanError
 from fleet.forecasts.demand import constant_rate_demand, expected, poisson_demand
-from fleet.plans.spares import spare_stock, stock_for
+from fleet.plans.spares import stock_for
 from tests.published import agrees, numbers
 
 NAME = "spares_thirty_parts.csv"
@@ -35,22 +35,12 @@ def test_the_stock_meets_its_target_and_one_less_does_not() -> None:
         assert demand[: stock + 1].sum() >= target > demand[:stock].sum()
 
 
-def test_parts_on_hand_and_on_order_both_count() -> None:
-    stock = spare_stock(poisson_demand(6.48), on_hand=5, on_order=2, target=0.95)
-    assert (stock.needed, stock.short) == (11, 4)
-    assert stock.chance_short == pytest.approx(1 - poisson_demand(6.48)[:8].sum())
-    assert spare_stock(poisson_demand(1.0), 50, 0, 0.95).short == 0
-    assert spare_stock(poisson_demand(1.0), 500, 0, 0.95).chance_short == 0.0
-
-
 @pytest.mark.parametrize("target", [0.0, 1.0, -0.1, float("nan")])
 def test_a_target_that_cannot_be_is_refused(target: float) -> None:
     with pytest.raises(PlanError, match="target"):
         stock_for(poisson_demand(1.0), target)
 
 
-def test_figures_that_are_no_distribution_or_stock_are_refused() -> None:
+def test_figures_that_are_no_distribution_are_refused() -> None:
     with pytest.raises(PlanError, match="not a distribution"):
         stock_for(np.array([0.5, 0.2]), 0.9)
-    with pytest.raises(PlanError, match="on hand"):
-        spare_stock(poisson_demand(1.0), -1, 0, 0.9)
