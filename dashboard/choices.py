@@ -26,7 +26,8 @@ class Choices:
     def values(self) -> dict[str, Any]:
         """Everything chosen in this draft so far, by name; safe to call in a callback."""
         start = f"{self.draft}:"
-        return {str(key)[len(start) :]: value for key, value in st.session_state.items() if str(key).startswith(start)}
+        kept = {str(key): value for key, value in st.session_state.items() if str(key).startswith(start)}
+        return {key[len(start) :]: self._last(key) if value is None else value for key, value in kept.items()}
 
     def said(self, name: str) -> Any:
         """What was chosen before the widget is drawn: in this visit, or by the address."""
@@ -44,7 +45,13 @@ class Choices:
         required: bool = False,
     ) -> str | None:
         """One of a few."""
-        key = self._start(name, chosen(name), default, lambda value: value is None or value in options)
+        key = self.key(name)
+        last = self._last(key) if required else None
+        self._start(
+            name, chosen(name), last or default, lambda value: value in options or (value is None and not required)
+        )
+        if required:
+            st.session_state[_last_key(key)] = st.session_state[key]
         widget = st.pills if pills else st.segmented_control
         return widget(label, options, key=key, format_func=format_func, required=required, wrap=True)
 
@@ -63,6 +70,14 @@ class Choices:
             value = None
         return self._start(name, value, default, lambda _: True)
 
+    def _last(self, key: str) -> Any:
+        """The last choice of a widget that always has one.
+
+        A quick tap on another widget can reach the server before the browser has taken up this one's first value; it
+        then sends none, and the first value would be lost.
+        """
+        return st.session_state.get(_last_key(key))
+
     def _start(self, name: str, said: Any, default: Any, fits: Callable[[Any], bool]) -> str:
         """Give a widget its first value, and take back one that is no longer on offer."""
         key = self.key(name)
@@ -71,3 +86,7 @@ class Choices:
         elif not fits(st.session_state[key]):
             st.session_state[key] = default
         return key
+
+
+def _last_key(key: str) -> str:
+    return f"last of {key}"
